@@ -18,3 +18,75 @@ export interface Problem {
   readonly example?: string;
   readonly severity: 'error' | 'warning';
 }
+
+/** The words of a problem, before its place is known. */
+export interface Words {
+  readonly message: string;
+  readonly expected?: string;
+  readonly example?: string;
+  readonly severity?: 'error' | 'warning';
+}
+
+/** A file as messages quote it. */
+export interface FileText {
+  /** Path as messages name it. */
+  readonly file: string;
+  /** Without line ends. */
+  readonly lines: readonly string[];
+}
+
+/** Splits a file's text into lines; every kind of line end is understood, a byte order mark is dropped. */
+export function fileText(file: string, text: string): FileText {
+  return { file, lines: text.replace(/^\ufeff/, '').split(/\r\n|\n|\r/) };
+}
+
+/** A problem at a place of a file; the place is brought within the text, so that a caret can always be drawn. */
+export function problemAt(
+  text: FileText,
+  place: { readonly line: number; readonly column: number; readonly length: number },
+  words: Words,
+): Problem {
+  const line = Math.max(1, Math.min(place.line, text.lines.length));
+  const sourceLine = text.lines[line - 1] ?? '';
+  const column = Math.max(1, Math.min(place.column, sourceLine.length + 1));
+  const length = Math.max(1, Math.min(place.length, sourceLine.length + 1 - column));
+  return {
+    file: text.file,
+    line,
+    column,
+    length,
+    sourceLine,
+    message: words.message,
+    ...(words.expected === undefined ? {} : { expected: words.expected }),
+    ...(words.example === undefined ? {} : { example: words.example }),
+    severity: words.severity ?? 'error',
+  };
+}
+
+/**
+ * A problem as a terminal shows it:
+ *
+ *     content/notes/lamp.md:12:18: error: a resistance (Ω) is due, `5 V` is a voltage
+ *       R1: { resistor: 5 V, nodes: [line, a] }
+ *                       ^^^
+ *       expected: a resistance (Ω)
+ *       example: R1: { resistor: 47 Ω, nodes: [a, gnd] }
+ */
+export function formatProblem(problem: Problem): string {
+  const { file, line, column, length, sourceLine, message, expected, example, severity } = problem;
+  // Tabs are kept under the line, so that the caret stands where the terminal puts the text.
+  const indent = sourceLine.slice(0, column - 1).replace(/[^\t]/g, ' ');
+  const text = [
+    `${file}:${line}:${column}: ${severity}: ${message}`,
+    `  ${sourceLine}`,
+    `  ${indent}${'^'.repeat(length)}`,
+  ];
+  if (expected !== undefined) text.push(`  expected: ${expected}`);
+  if (example !== undefined) text.push(`  example: ${example}`);
+  return text.join('\n');
+}
+
+/** By line, then column; problems of one place stay in their order. */
+export function sortProblems(problems: readonly Problem[]): Problem[] {
+  return [...problems].sort((left, right) => left.line - right.line || left.column - right.column);
+}
