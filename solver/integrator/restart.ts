@@ -1,0 +1,193 @@
+/**
+ * Consistent values just after something jumped: the stored charges and fluxes are kept, everything else is solved for, and threshold devices
+ * and voltage-driven switches are put into the modes that the circuit then asks for.
+ */
+import { NoSolution } from '../analysis.ts';
+import type { System } from '../equations/system.ts';
+import { setMode } from '../equations/system.ts';
+import { PLAIN, solveNewton } from '../newton.ts';
+import { inconsistentDevice, OPEN_LEAK, type StaticContext } from '../operating-point.ts';
+import { START_WEIGHTS } from './radau-coefficients.ts';
+import { forgetHistory, type Stepper, solveStages } from './radau-step.ts';
+
+/** Length of the backward step that finds consistent values, and of the probe that finds currents through ideal loops, as fractions of `span`. */
+const TINY = 1e-15;
+const PROBE = 1e-5;
+
+/**
+ * Makes `y` consistent at `t` with the charges and fluxes that it holds, plus those in `missing` (by row, n + 1 elements). `span` is the time scale
+ * of the analysis in seconds. The currents of ideal loops (a capacitor across sources) are derivatives: a probing step finds them.
+ */
+export function restart(
+  stepper: Stepper,
+  t: number,
+  span: number,
+  missing: Float64Array | undefined,
+  y: Float64Array,
+  context: StaticContext,
+): void {
+  const { system } = stepper;
+  const tiny = TINY * span;
+  const limit = 8 * system.modal.length + 64;
+  const idealLoops = needsProbe(system);
+  const before = y.slice();
+  for (let attempt = 0; attempt <= limit; attempt++) {
+    y.set(before);
+    holdCharges(stepper, t, tiny, missing, y, context);
+    if (idealLoops) probe(stepper, t, PROBE * span, y);
+    const next = inconsistentDevice(system, y, attempt > 2 * system.modal.length + 4);
+    if (!next) {
+      forgetHistory(stepper);
+      return;
+    }
+    setMode(system, next.device, next.mode);
+    if (attempt === limit) {
+      const device = system.modal[next.device]!;
+      throw new NoSolution({
+        analysis: context.analysis,
+        at: t,
+        component: device.designator,
+        reason: `${device.designator} finds no state that fits at this instant: each of its states contradicts itself`,
+        advice: 'give it an on_resistance, or a switch some hysteresis',
+      });
+    }
+  }
+}
+
+function holdCharges(
+  stepper: Stepper,
+  t: number,
+  tiny: number,
+  missing: Float64Array | undefined,
+  y: Float64Array,
+  context: StaticContext,
+): void {
+  const { system, effort } = stepper;
+  const guess = y.slice();
+  const attempt = (damped: boolean): boolean => {
+    const outcome = solveNewton(
+      system,
+      { ...PLAIN, t, rate: 1 / tiny, missing, chargeRows: false, damped, maximumIterations: damped ? 400 : 100 },
+      y,
+    );
+    effort.newtonIterations += outcome.iterations;
+    effort.factorisations += outcome.factorisations;
+    stepper.worst = outcome.singularColumns?.[0] ?? outcome.worst;
+    return outcome.converged;
+  };
+  if (attempt(false)) return;
+  if (system.modal.length > 0) {
+    y.set(guess);
+    for (let k = 0; k < system.modal.length; k++) setMode(system, k, system.modes[k]!, OPEN_LEAK);
+    if (attempt(false)) {
+      context.remarks.add(
+        'open switches and threshold devices were given a leak of 1 pS, since nothing else ties a node down',
+      );
+      return;
+    }
+  }
+  y.set(guess);
+  if (attempt(true)) {
+    context.remarks.add('Newton’s method was damped to find consistent values after a jump');
+    return;
+  }
+  throw unsettled(stepper, t, context.analysis, 'no consistent values were found after a jump');
+}
+
+/** Replaces the unknowns that carry no charge or flux by what a short step, taken back to its start, says of them. */
+function probe(stepper: Stepper, t: number, h: number, y: Float64Array): void {
+  const { system, z } = stepper;
+  forgetHistory(stepper);
+  const tolerance = stepper.newtonTolerance;
+  stepper.newtonTolerance = 1e-4 * tolerance;
+  const solved = solveStages(stepper, t, h, y);
+  stepper.newtonTolerance = tolerance;
+  forgetHistory(stepper);
+  if (!solved) return;
+  const [a, b, c] = START_WEIGHTS;
+  for (let i = 0; i < system.size; i++) {
+    if (!system.dynamic[i]) y[i]! += a * z[0][i]! + b * z[1][i]! + c * z[2][i]!;
+  }
+}
+
+/** The message for an instant at which the equations could not be solved. */
+export function unsettled(stepper: Stepper, t: number, analysis: string, reason: string): NoSolution {
+  const { system, worst } = stepper;
+  const name = system.names[worst] ?? 'gnd';
+  const component = name.endsWith('.i')
+    ? name.slice(0, -2)
+    : system.laws.find((law) => law.first === worst || law.second === worst)?.designator;
+  return new NoSolution({
+    analysis,
+    at: t,
+    unknown: name,
+    component,
+    reason,
+    advice:
+      'check the values there; add the series resistance or the capacitance that the real part has, or ask for less accuracy',
+  });
+}
+
+/** True where some current or potential follows a derivative of a source: loops of sources and capacitors, or their dual. */
+export function needsProbe(system: System): boolean {
+  let known = probeNeeded.get(system);
+  if (known === undefined) {
+    known = hasIdealLoop(system) || hasIdealCut(system);
+    probeNeeded.set(system, known);
+  }
+  return known;
+}
+
+const probeNeeded = new WeakMap<System, boolean>();
+
+/** A loop of capacitors and branches whose voltage does not depend on their current. */
+function hasIdealLoop(system: System): boolean {
+  const join = joiner();
+  let loop = false;
+  for (const component of system.circuit.components) {
+    const stiff =
+      component.kind === 'capacitor' ||
+      component.kind === 'source' ||
+      (component.kind === 'controlled-source' && component.output === 'voltage') ||
+      (component.kind === 'switch' && component.onResistance === 0) ||
+      ('law' in component && component.law.law === 'threshold' && component.law.onResistance === 0);
+    // ideal contacts in a loop by themselves are not both closed; counting them as a loop costs one probe
+    if (stiff && join(component.nodes[0], component.nodes[1])) loop = true;
+  }
+  return loop;
+}
+
+/** A cut that only inductors, sources of current and open contacts cross. */
+function hasIdealCut(system: System): boolean {
+  const { components } = system.circuit;
+  if (!components.some((component) => component.kind === 'inductor')) return false;
+  const join = joiner();
+  const crossing = components.filter((component) => {
+    const open =
+      component.kind === 'inductor' ||
+      component.kind === 'current-source' ||
+      (component.kind === 'controlled-source' && component.output === 'current') ||
+      component.kind === 'switch' ||
+      ('law' in component && component.law.law === 'threshold');
+    if (!open) join(component.nodes[0], component.nodes[1]);
+    return open;
+  });
+  return crossing.filter(({ nodes }) => !join(nodes[0], nodes[1])).length > 0;
+}
+
+/** Joins two nodes; true where they were joined already. */
+function joiner(): (a: string, b: string) => boolean {
+  const parent = new Map<string, string>();
+  const find = (node: string): string => {
+    let root = node;
+    for (let up = parent.get(root); up !== undefined && up !== root; up = parent.get(root)) root = up;
+    return root;
+  };
+  return (a, b) => {
+    const from = find(a);
+    const to = find(b);
+    if (from === to) return true;
+    parent.set(from, to);
+    return false;
+  };
+}

@@ -1,0 +1,404 @@
+/**
+ * The time response: Radau IIA steps under error control, landing on every corner of the sources and on every event of threshold devices and
+ * switches, with consistent values after each.
+ */
+import type { Effort, TimeResponseRequest } from './analysis.ts';
+import { NoSolution } from './analysis.ts';
+import { evaluateCurrents } from './equations/evaluate.ts';
+import type { System } from './equations/system.ts';
+import { exitMargin, setMode } from './equations/system.ts';
+import { type FoundEvent, findEvent } from './integrator/events.ts';
+import { createStepper, estimateError, forgetHistory, type Stepper, solveStages } from './integrator/radau-step.ts';
+import { createRecorder, type Recorder, recordStep } from './integrator/recorder.ts';
+import { needsProbe, restart, unsettled } from './integrator/restart.ts';
+import { findOperatingPoint, type StaticContext, unknownScale } from './operating-point.ts';
+import { highestAngularFrequency, segmentAt, waveCorners } from './wave-evaluation.ts';
+
+/** Local errors are held to this fraction of the accuracy asked of a figure: they add up over a period. */
+export const LOCAL_FRACTION = 1;
+
+/** A tolerance is relative to an unknown, or to this fraction of the largest one of its kind. */
+const SCALE_FRACTION = 0.1;
+
+/** Steps that a single analysis may take. */
+const MAXIMUM_STEPS = 5_000_000;
+
+/** Events in a row without the time moving on. */
+const MAXIMUM_CHATTER = 100;
+
+export interface TimeMarch {
+  readonly recorder: Recorder;
+  readonly stepper: Stepper;
+}
+
+interface March {
+  readonly system: System;
+  readonly stepper: Stepper;
+  readonly recorder: Recorder;
+  readonly context: StaticContext;
+  readonly tolerance: number;
+  readonly span: number;
+  readonly from: number;
+  t: number;
+  h: number;
+  /** Unknowns at t, n + 1 elements. */
+  readonly y: Float64Array;
+  readonly scale: { voltage: number; current: number };
+  /** Error and step length of the last accepted step, for the predictive controller. */
+  lastError: number;
+  lastStep: number;
+  chatter: number;
+  /** Length of the step in which the event ahead was first seen. */
+  approachFrom?: number;
+  /** The event that the next step is meant to end on. */
+  aim?: FoundEvent;
+}
+
+/** `accuracy` is the relative accuracy that figures must keep. */
+export function marchInTime(
+  system: System,
+  request: TimeResponseRequest,
+  accuracy: number,
+  effort: Effort,
+  remarks: Set<string>,
+): TimeMarch {
+  const { until, from } = request;
+  const analysis = request.find;
+  const corners = landingTimes(system, request);
+  const y = new Float64Array(system.size + 1);
+  const stepper = createStepper(system, effort);
+  const march: March = {
+    system,
+    stepper,
+    recorder: createRecorder(system.size, system.modal.length),
+    context: { analysis, t: 0, effort, remarks },
+    tolerance: LOCAL_FRACTION * accuracy,
+    span: until,
+    from,
+    t: 0,
+    h: 0,
+    y,
+    scale: { voltage: 1e-3, current: 1e-9 },
+    lastError: 1e-2,
+    lastStep: 0,
+    chatter: 0,
+  };
+  stepper.newtonTolerance = Math.max((10 * 2.2e-16) / march.tolerance, Math.min(0.01, Math.sqrt(march.tolerance)));
+  bindSegments(system, 0, corners[0]!);
+  restart(stepper, 0, until, startingCharges(march, request), y, march.context);
+  updateScale(march);
+  for (const [k, corner] of corners.entries()) {
+    if (k > 0) enterSegment(march, corners[k - 1]!, corner);
+    stepTo(march, corner);
+  }
+  return { recorder: march.recorder, stepper };
+}
+
+/** Corners of all sources, toggles of switches, and where keeping begins; ends with `until`. */
+function landingTimes(system: System, request: TimeResponseRequest): number[] {
+  const { until, from } = request;
+  const times = new Set<number>(from > 0 ? [from] : []);
+  for (const drive of system.drives) for (const corner of waveCorners(drive.wave, 0, until)) times.add(corner);
+  for (const device of system.modal)
+    for (const toggle of device.toggles ?? []) if (toggle > 0 && toggle < until) times.add(toggle);
+  const sorted = [...times].sort((a, b) => a - b);
+  // corners of several sources that differ by rounding are one
+  const kept = sorted.filter((time, k) => k === 0 || time - sorted[k - 1]! > 1e-12 * until);
+  while (kept.length > 0 && until - kept.at(-1)! < 1e-12 * until) kept.pop();
+  return [...kept, until];
+}
+
+function bindSegments(system: System, begin: number, end: number): void {
+  for (const drive of system.drives) drive.segment = segmentAt(drive.wave, begin + (end - begin) / 2);
+}
+
+/** Sets `y` to what the response starts from; returns the charges and fluxes by row that it still lacks. */
+function startingCharges(march: March, request: TimeResponseRequest): Float64Array | undefined {
+  const { system, y, context } = march;
+  const { start } = request;
+  if (start === 'operating point') {
+    findOperatingPoint(system, y, context);
+    // the leak that a node without other ties had at the operating point is taken away again
+    for (let k = 0; k < system.modal.length; k++) setMode(system, k, system.modes[k]!);
+    return undefined;
+  }
+  if (start === 'rest') return undefined;
+  const stored = new Float64Array(system.size + 1);
+  for (const component of system.circuit.components) {
+    const value = start[component.designator];
+    if (value === undefined) continue;
+    if (component.kind === 'capacitor') {
+      const first = system.nodeIndex.get(component.nodes[0])!;
+      const second = system.nodeIndex.get(component.nodes[1])!;
+      const branch = system.branchIndex.get(component.designator);
+      const charge = component.capacitance * value;
+      if (branch === undefined) {
+        stored[first]! += charge;
+        stored[second]! -= charge;
+      } else stored[branch]! -= charge;
+    } else if (component.kind === 'inductor') {
+      stored[system.branchIndex.get(component.designator)!]! -= component.inductance * value;
+    }
+  }
+  return stored;
+}
+
+function enterSegment(march: March, begin: number, end: number): void {
+  const { system } = march;
+  let changed = false;
+  for (const drive of system.drives) {
+    const segment = segmentAt(drive.wave, begin + (end - begin) / 2);
+    if (
+      segment.slope !== drive.segment.slope ||
+      segment.offset !== drive.segment.offset ||
+      segment.sines !== drive.segment.sines
+    )
+      changed = changed || !sameSegment(segment, drive.segment, begin);
+    drive.segment = segment;
+  }
+  system.modal.forEach((device, k) => {
+    const toggles = device.toggles?.filter((toggle) => Math.abs(toggle - begin) <= 1e-12 * march.span).length ?? 0;
+    if (toggles % 2 === 1) {
+      setMode(system, k, 1 - system.modes[k]!);
+      changed = true;
+    }
+  });
+  if (changed) restartHere(march);
+}
+
+function sameSegment(a: ReturnType<typeof segmentAt>, b: ReturnType<typeof segmentAt>, t: number): boolean {
+  if (a.slope !== b.slope || a.sines.length !== b.sines.length) return false;
+  const offsetA = a.offset + a.slope * (t - a.origin);
+  const offsetB = b.offset + b.slope * (t - b.origin);
+  const same = Math.abs(offsetA - offsetB) <= 1e-14 * (Math.abs(offsetA) + Math.abs(offsetB));
+  return (
+    same &&
+    a.sines.every((sine, k) => sine.peak === b.sines[k]!.peak && sine.angularFrequency === b.sines[k]!.angularFrequency)
+  );
+}
+
+function restartHere(march: March): void {
+  const { system, stepper, y } = march;
+  restart(stepper, march.t, march.span, undefined, y, march.context);
+  updateScale(march);
+  march.lastStep = 0;
+}
+
+function updateScale(march: March): void {
+  const now = unknownScale(march.system, march.y);
+  march.scale.voltage = Math.max(march.scale.voltage, now.voltage);
+  march.scale.current = Math.max(march.scale.current, now.current);
+}
+
+/** Steps from march.t to `end`, through the events on the way. */
+function stepTo(march: March, end: number): void {
+  const { system, stepper, y, context } = march;
+  const start = new Float64Array(system.size + 1);
+  const scratch = new Float64Array(system.size + 1);
+  const longest = longestStep(march, end - march.t);
+  const begin = march.t;
+  if (march.h <= 0) march.h = 1e-4 * (end - begin);
+  // after a restart nothing is known of how fast things move now
+  if (march.lastStep === 0) march.h = Math.min(march.h, 0.02 * (end - begin));
+  march.h = Math.min(march.h, longest);
+  const { effort } = stepper;
+  let failures = 0;
+  let rejected = false;
+  while (march.t < end) {
+    if (effort.steps + effort.rejectedSteps > MAXIMUM_STEPS) {
+      throw unsettled(stepper, march.t, context.analysis, `more than ${MAXIMUM_STEPS} steps were needed`);
+    }
+    let h = Math.min(march.h, longest);
+    const left = end - march.t;
+    let last = false;
+    if (h * 1.01 >= left) {
+      h = left;
+      last = true;
+    } else if (2 * h > left) h = left / 2;
+    setWeights(march);
+    if (!solveStages(stepper, march.t, h, y)) {
+      effort.rejectedSteps++;
+      failures++;
+      forgetHistory(stepper);
+      march.h = h * (failures > 3 ? 0.1 : 0.4);
+      rejected = true;
+      if (march.h < 1e-14 * march.span || failures > 60) {
+        throw unsettled(
+          stepper,
+          march.t,
+          context.analysis,
+          'the step could not be made small enough for the equations to settle',
+        );
+      }
+      continue;
+    }
+    evaluateCurrents(system, march.t, y, start);
+    estimateError(stepper, h, start);
+    const error = errorNorm(march, h);
+    const safety = (0.9 * (2 * 10 + 1)) / (2 * 10 + stepper.iterations);
+    if (!(error <= 1)) {
+      effort.rejectedSteps++;
+      march.h = h * Math.max(0.1, Math.min(0.9, safety * error ** -0.25));
+      rejected = true;
+      failures++;
+      forgetHistory(stepper);
+      // values that drifted off the algebraic equations look like an error that no step length cures
+      if (failures % 5 === 0) {
+        restartHere(march);
+        march.h = Math.min(march.h, 0.1 * h);
+      }
+      if (march.h < 1e-14 * march.span) {
+        throw unsettled(
+          stepper,
+          march.t,
+          context.analysis,
+          'the step could not be made small enough for the accuracy asked',
+        );
+      }
+      continue;
+    }
+    const event =
+      system.modal.length > 0
+        ? (arrival(march, scratch) ?? findEvent(system, y, stepper.z, march.scale, scratch))
+        : undefined;
+    if (event) {
+      const landing = planLanding(march, event, h);
+      if (landing === 'shorter') continue;
+      if (landing === 'at the end') accept(march, last ? end : march.t + h);
+      const before = march.approachFrom ?? h;
+      takeEvent(march, event);
+      rejected = false;
+      failures = 0;
+      // the steps that led up to the event say nothing of how fast things move after it
+      march.h = Math.min(0.2 * before, 0.05 * (end - begin));
+      continue;
+    }
+    let factor = safety * error ** -0.25;
+    if (march.lastStep > 0 && !rejected) {
+      // predictive controller (K. Gustafsson, 1994)
+      factor = Math.min(factor, (0.9 * h * (march.lastError / (error * error)) ** 0.25) / march.lastStep);
+    }
+    factor = Math.max(0.125, Math.min(rejected ? 1 : 8, factor));
+    march.lastError = Math.max(1e-2, error);
+    march.lastStep = h;
+    march.chatter = 0;
+    accept(march, last ? end : march.t + h);
+    if (!(last && h * factor < march.h)) march.h = h * factor;
+    rejected = false;
+    failures = 0;
+  }
+}
+
+function accept(march: March, end: number): void {
+  const { system, stepper, y } = march;
+  if (end > march.from) recordStep(march.recorder, march.t, end, y, stepper.z, system.modes);
+  const increment = stepper.z[2];
+  for (let i = 0; i < system.size; i++) y[i]! += increment[i]!;
+  march.t = end;
+  stepper.effort.steps++;
+  updateScale(march);
+}
+
+/** The tolerance of each unknown: relative to itself, or to a fraction of the largest of its kind so far. */
+function setWeights(march: March): void {
+  const { system, stepper, y, tolerance, scale } = march;
+  const nodes = system.nodeIndex.size - 1;
+  const voltage = SCALE_FRACTION * scale.voltage;
+  const current = SCALE_FRACTION * scale.current;
+  for (let i = 0; i < system.size; i++) {
+    stepper.weight[i] = 1 / (tolerance * (Math.abs(y[i]!) + (i < nodes ? voltage : current)));
+  }
+}
+
+/** Weighted error of the step: of the unknowns that carry charge by the embedded formula, of the others by what extrapolation missed. */
+function errorNorm(march: March, h: number): number {
+  const { system, stepper } = march;
+  const { error, weight, z, predicted } = stepper;
+  let square = 0;
+  let count = 0;
+  // What a quartic term adds to the extrapolation at the first stage, and to the interpolation within the step, for the ratio of the steps.
+  // a derivative over a very short step is rounding noise
+  const extrapolated = stepper.extrapolatedFrom > 0 && h > 1e-8 * march.span;
+  const ratio = extrapolated ? h / stepper.extrapolatedFrom : 0;
+  const inwards = Math.min(9, 0.25 * ratio ** 2.7);
+  let largest = 0;
+  for (let i = 0; i < system.size; i++) {
+    if (system.dynamic[i]) {
+      const scaled = error[i]! * weight[i]!;
+      square += scaled * scaled;
+      count++;
+    } else if (extrapolated) {
+      largest = Math.max(largest, Math.abs(predicted[i]! - z[0][i]!) * weight[i]! * inwards * OUTPUT_FRACTION);
+    }
+  }
+  return Math.max(count > 0 ? Math.sqrt(square / count) : 0, largest, 1e-6);
+}
+
+/** Dense output need not be better than the figures: its error does not add up. */
+const OUTPUT_FRACTION = 0.3;
+
+/** No step is longer than what its dense output can follow of the fastest sine. */
+function longestStep(march: March, stretch: number): number {
+  let fastest = 0;
+  for (const drive of march.system.drives) fastest = Math.max(fastest, highestAngularFrequency(drive.segment));
+  // cubic through the collocation nodes: error about (ωh)⁴ / 1000
+  const resolved = fastest > 0 ? (1000 * march.tolerance) ** 0.25 / fastest : Number.POSITIVE_INFINITY;
+  return Math.min(stretch, Math.max(resolved, 1e-9 * stretch));
+}
+
+/**
+ * How to meet the event: at the end of the step just solved, right here without a step, or with a shorter one (set in `march.h`). Where a
+ * current is the derivative of a charge, its zero is approached in ever shorter steps, since only short ones know it exactly.
+ */
+function planLanding(march: March, event: FoundEvent, h: number): 'at the end' | 'here' | 'shorter' {
+  const target = event.at * h;
+  if (target <= 1e-13 * march.span) return 'here';
+  if (event.at >= 1 - 1e-10) return 'at the end';
+  march.approachFrom ??= h;
+  const coarse =
+    event.quantity === 'current' && needsProbe(march.system) && target > FINAL_APPROACH * march.approachFrom;
+  march.h = coarse ? 0.97 * target : target;
+  march.aim = coarse ? undefined : event;
+  forgetHistory(march.stepper);
+  return 'shorter';
+}
+
+/**
+ * The event that the step just solved was aimed at, where its end meets it to within the rounding of a derivative over a short step. Without this, the
+ * remaining distance would be crossed by a step so short that its currents are noise.
+ */
+function arrival(march: March, scratch: Float64Array): FoundEvent | undefined {
+  const { aim, system, y, stepper } = march;
+  march.aim = undefined;
+  if (!aim || aim.quantity !== 'current' || !needsProbe(system)) return undefined;
+  const device = system.modal[aim.device]!;
+  const exit = device.modes[system.modes[aim.device]!]!.exits.find(({ to }) => to === aim.mode)!;
+  for (let i = 0; i < system.size; i++) scratch[i] = y[i]! + stepper.z[2][i]!;
+  const margin = exitMargin(exit, device, scratch);
+  return Math.abs(margin) <= DERIVATIVE_ROUNDING * march.scale.current ? { ...aim, at: 1 } : undefined;
+}
+
+/** A current that is a derivative is known to this fraction of the largest one. */
+const DERIVATIVE_ROUNDING = 1e-9;
+
+/** The last step before the zero of a derivative current, as a fraction of the step in which the zero was first seen. */
+const FINAL_APPROACH = 0.003;
+
+function takeEvent(march: March, event: FoundEvent): void {
+  const { system, stepper } = march;
+  march.approachFrom = undefined;
+  stepper.effort.events++;
+  march.chatter++;
+  if (march.chatter > MAXIMUM_CHATTER) {
+    const device = system.modal[event.device]!;
+    throw new NoSolution({
+      analysis: march.context.analysis,
+      at: march.t,
+      component: device.designator,
+      reason: `${device.designator} switches back and forth without the time moving on`,
+      advice: 'give a switch some hysteresis, or a threshold device an on_resistance',
+    });
+  }
+  setMode(system, event.device, event.mode);
+  restartHere(march);
+}
