@@ -266,3 +266,13 @@ function dueInWords(due: Due): string {
 function expectation(due: Due): string {
   return `${dueInWords(due)}, e.g. \`${due.example}\``;
 }
+
+/** A number and a unit of whatever dimension, as in the ratings of a part. */
+export function parseAnyScalar(text: string): { value: number; dimension: Dimension; text: string } | undefined {
+  const written = text.trim();
+  const number = readNumberAt(written, 0);
+  if (!number) return undefined;
+  const rest = written.slice(number.end).trim();
+  const unit = parseUnit(rest === '' ? '1' : rest);
+  return unit && { value: toSI(number.value, unit), dimension: unit.dimension, text: written };
+}

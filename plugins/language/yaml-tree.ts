@@ -145,18 +145,25 @@ type YamlEvent = ReturnType<typeof parseEvents>[number];
 function buildTree(passage: Passage, events: readonly YamlEvent[]): YamlNode | undefined {
   const { text } = passage;
   let at = 0;
+  /** Where the last node read ended. */
+  let end = 0;
 
   /** Reads one node; `after` is where the last key or item before it ended, the place of a node that is not there. */
   const readNode = (depth: number, after: number): YamlNode => {
     const event = events[at++]!;
     if (depth > DEEPEST_NESTING) throw new RangeError('nesting');
     refuseDecorations(passage, event);
-    if (event.type === EVENT_SCALAR) return scalarOf(passage, event, after);
+    if (event.type === EVENT_SCALAR) {
+      end = event.valueStart < 0 ? after : event.valueEnd + (event.style === 2 || event.style === 3 ? 1 : 0);
+      return scalarOf(passage, event, after);
+    }
+    end = Math.max(end, event.type === EVENT_ALIAS ? event.anchorEnd : 'start' in event ? event.start + 1 : 0);
     if (event.type === EVENT_SEQUENCE) {
       const items: YamlNode[] = [];
       while (events[at]!.type !== EVENT_POP) items.push(readNode(depth + 1, event.start));
       at++;
-      return { type: 'sequence', items, place: placeOf(passage, event.start, lineEnd(text, event.start)), passage };
+      if (event.style === 2) end = closing(text, ']', end);
+      return { type: 'sequence', items, place: placeOf(passage, event.start, end), passage };
     }
     if (event.type === EVENT_MAPPING) {
       const entries: YamlEntry[] = [];
@@ -174,7 +181,8 @@ function buildTree(passage: Passage, events: readonly YamlEvent[]): YamlNode | u
         seen.add(keyNode.text);
       }
       at++;
-      const place = placeOf(passage, event.start, lineEnd(text, event.start));
+      if (event.style === 2) end = closing(text, '}', end);
+      const place = placeOf(passage, event.start, end);
       return { type: 'mapping', entries, repeated, place, passage };
     }
     // An alias; reported already, and it stands for nothing.
@@ -271,7 +279,8 @@ function endOf(scalar: YamlScalar): number {
   return scalar.offsets.length === 0 ? 0 : scalar.offsets.at(-1)! + 1;
 }
 
-function lineEnd(text: string, from: number): number {
-  const end = text.indexOf('\n', from);
-  return end === -1 ? text.length : end;
+/** Index after the bracket that closes a collection whose last entry ended at `from`. */
+function closing(text: string, bracket: string, from: number): number {
+  const found = text.indexOf(bracket, from);
+  return found === -1 ? from : found + 1;
 }
