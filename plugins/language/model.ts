@@ -3,6 +3,7 @@ import type { AnalysisRequest } from '../../solver/analysis.ts';
 import type { Circuit } from '../../solver/circuit.ts';
 import type { CheckedExpression } from '../expressions/expression.ts';
 import type { Problem } from '../problems.ts';
+import type { Dimension } from './dimensions.ts';
 
 /** Where something stands in the note's file: 1-based line and column, and its length in characters. */
 export interface Place {
@@ -33,6 +34,8 @@ export interface Note {
   readonly blocks: readonly Block[];
   readonly inlineValues: readonly InlineValue[];
   readonly problems: readonly Problem[];
+  /** Absolute paths of the part and data files that were read, or looked for; sorted. */
+  readonly dependencies: readonly string[];
 }
 
 interface BlockPlace {
@@ -61,6 +64,12 @@ export interface ComponentDescription {
   readonly nodes: readonly string[];
   /** Relative deviations where a tolerance was stated: +0.05 and -0.05 for ±5 %. */
   readonly tolerance?: { readonly plus: number; readonly minus: number };
+  /** Name of the part that the value comes from. */
+  readonly part?: string;
+  /** What expressions read as `C1.value`, `D1.rating.forward_current`: by the path after the designator, in SI. */
+  readonly data?: {
+    readonly [path: string]: { readonly value: number; readonly dimension: Dimension; readonly text: string };
+  };
   readonly place: Place;
 }
 
@@ -138,6 +147,8 @@ export interface InlineValue {
   readonly expression: CheckedExpression;
   readonly unit?: string;
   readonly digits?: number;
+  /** Counts the computed values of the note's prose from 0, those with problems included. */
+  readonly index: number;
   readonly place: Place;
 }
 
