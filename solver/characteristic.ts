@@ -26,7 +26,7 @@ export function traceCharacteristic(
   effort: Effort,
   remarks: Set<string>,
 ): Recorder {
-  const drive = system.drives.find(({ designator }) => designator === request.sweep);
+  const drive = [...system.drives, ...system.driven].find(({ designator }) => designator === request.sweep);
   if (!drive) throw new Error(`Internal error: no source '${request.sweep}' to sweep`);
   const low = Math.min(request.from, request.to);
   const high = Math.max(request.from, request.to);
@@ -34,13 +34,13 @@ export function traceCharacteristic(
   const context: StaticContext = { analysis: request.find, t: 0, effort, remarks };
   const solveAt = (at: number, near: Point | undefined): Point => {
     drive.segment = { origin: 0, offset: at, slope: 0, sines: [] };
-    const y = near ? near.y.slice() : new Float64Array(system.size + 1);
+    const y = near ? near.y.slice() : new Float64Array(system.vectorLength);
     if (near) for (let k = 0; k < near.modes.length; k++) setMode(system, k, near.modes[k]!);
     findOperatingPoint(system, y, { ...context, t: at });
     return { at, y, modes: system.modes.slice() };
   };
   const scale = { voltage: 0, current: 0 };
-  const nodes = system.nodeIndex.size - 1;
+  const nodes = system.nodeCount;
   const noteScale = ({ y }: Point): void => {
     for (let i = 0; i < system.size; i++) {
       const key = i < nodes ? 'voltage' : 'current';

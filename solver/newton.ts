@@ -4,7 +4,7 @@
  * large rate does not magnify the rounding of y. Junction voltages are limited device by device: each law is evaluated, and
  * taken as linear, about a voltage that moved no further than the law allows.
  */
-import { applyLinear, evaluateDrives } from './equations/evaluate.ts';
+import { applyConductance, applyStorage, evaluateDrives, setDriven } from './equations/evaluate.ts';
 import type { System } from './equations/system.ts';
 import { analyseAndFactorise, factorise, type RealFactors, solveFactored } from './linear/factors.ts';
 
@@ -53,7 +53,7 @@ export const PLAIN: StaticProblem = {
   maximumIterations: 100,
 };
 
-/** Improves `y` (n + 1 elements, the last 0) in place. */
+/** Improves `y` in place, and sets its driven potentials. */
 export function solveNewton(system: System, problem: StaticProblem, y: Float64Array): NewtonOutcome {
   const { size, pattern, laws, islands } = system;
   const entries = pattern.column.length;
@@ -63,11 +63,13 @@ export function solveNewton(system: System, problem: StaticProblem, y: Float64Ar
   const drives = new Float64Array(size + 1);
   const charge = new Float64Array(size + 1);
   const start = y.slice();
-  const change = new Float64Array(size + 1);
+  const change = new Float64Array(system.vectorLength);
   const update = new Float64Array(size + 1);
+  setDriven(system, problem.t, y, problem.driveScale);
+  for (const { index } of system.driven) change[index] = y[index]! - start[index]!;
   const point = Float64Array.from(laws, (law) => y[law.first]! - y[law.second]!);
   const result = new Float64Array(2);
-  const nodes = system.nodeIndex.size - 1;
+  const nodes = system.nodeCount;
   evaluateDrives(system, problem.t, drives);
   if (problem.driveScale !== 1) for (let i = 0; i < size; i++) drives[i]! *= problem.driveScale;
   linear.set(system.conductance);
@@ -77,12 +79,12 @@ export function solveNewton(system: System, problem: StaticProblem, y: Float64Ar
   if (diagonal !== 0) for (let i = 0; i < nodes; i++) linear[diagonalSlot(system, i)]! += diagonal;
 
   const residual = (at: Float64Array, withJacobian: boolean): void => {
-    applyLinear(system, system.conductance, at, right);
+    applyConductance(system, at, right);
     if (withJacobian) jacobian.set(linear);
     for (let i = 0; i < size; i++) right[i]! += drives[i]!;
     if (problem.shunt !== 0) for (let i = 0; i < nodes; i++) right[i]! += problem.shunt * at[i]!;
     if (problem.rate !== 0) {
-      applyLinear(system, system.storage, change, charge);
+      applyStorage(system, change, charge);
       for (let i = 0; i < size; i++) right[i]! += problem.rate * (charge[i]! - (problem.missing?.[i] ?? 0));
       if (held !== 0) for (let i = 0; i < nodes; i++) right[i]! += held * change[i]!;
     }
@@ -100,7 +102,7 @@ export function solveNewton(system: System, problem: StaticProblem, y: Float64Ar
       jacobian[law.slots[3]]! += result[1]!;
     }
     if (problem.chargeRows && problem.rate === 0 && problem.shunt === 0 && islands.length > 0) {
-      applyLinear(system, system.storage, at, charge);
+      applyStorage(system, at, charge);
       for (const island of islands)
         putChargeRow(system, island.rows, charge, right, withJacobian ? jacobian : undefined);
     }

@@ -69,11 +69,11 @@ export function inconsistentDevice(
 
 /** The largest potential (at least 1 V) and branch current (at least 1 µA) of a vector of unknowns. */
 export function unknownScale(system: System, y: Float64Array): { voltage: number; current: number } {
-  const nodes = system.nodeIndex.size - 1;
   let voltage = 1;
   let current = 1e-6;
+  for (const { index } of system.driven) voltage = Math.max(voltage, Math.abs(y[index]!));
   for (let i = 0; i < system.size; i++) {
-    if (i < nodes) voltage = Math.max(voltage, Math.abs(y[i]!));
+    if (i < system.nodeCount) voltage = Math.max(voltage, Math.abs(y[i]!));
     else current = Math.max(current, Math.abs(y[i]!));
   }
   return { voltage, current };

@@ -4,8 +4,9 @@ import type { Circuit, Component } from './circuit.ts';
 import { REFERENCE_NODE } from './circuit.ts';
 import { buildSystem } from './equations/build-system.ts';
 import type { System } from './equations/system.ts';
-import { evaluateSegment, segmentAt } from './wave-evaluation.ts';
+import { evaluateSegment, segmentAt, waveCorners } from './wave-evaluation.ts';
 import { COLLOCATION_NODES, type Waveform } from './waveform/waveform.ts';
+import type { Wave } from './waves.ts';
 
 export type Property = 'v' | 'i' | 'p' | 'q' | 'flux' | 'energy';
 
@@ -63,7 +64,8 @@ function readerOf(solution: Solution): Reader {
     system = buildSystem(solution.circuit);
     systems.set(solution.circuit, system);
   }
-  const { size, nodeIndex } = system;
+  const built = system;
+  const { size, nodeIndex } = built;
   const count = 4 * (solution.grid.length - 1 || 1);
   const unknown = (index: number): Float64Array => {
     const values = new Float64Array(count);
@@ -78,7 +80,9 @@ function readerOf(solution: Solution): Reader {
       if (name === REFERENCE_NODE) return new Float64Array(count);
       const index = nodeIndex.get(name);
       if (index === undefined) throw new Error(`Internal error: no node '${name}'`);
-      return unknown(index);
+      if (index < size) return unknown(index);
+      const source = built.driven.find((node) => node.index === index)!;
+      return driveValues(solution, source).map((value) => source.sign * value);
     },
   };
 }
@@ -142,7 +146,9 @@ function readCurrent(reader: Reader, component: Component, voltage: () => Float6
       return derivativeAtNodes(solution.grid, voltage()).map((value) => capacitance * value);
     }
     case 'current-source':
-      return driveValues(reader, component.designator);
+      return driveValues(solution, system.drives.find(({ designator }) => designator === component.designator)!);
+    case 'source':
+      return currentFromNode(reader, component);
     case 'controlled-source': {
       const { control, gain } = component;
       if (control.quantity === 'current') {
@@ -164,20 +170,37 @@ function readCurrent(reader: Reader, component: Component, voltage: () => Float6
   }
 }
 
-/** A source of current at the nodes of every step, each taken from the smooth piece that holds there. */
-function driveValues(reader: Reader, designator: string): Float64Array {
-  const { system, solution } = reader;
+/** The current of a source that fixes a node's potential: what the node's other components do not carry away. */
+function currentFromNode(reader: Reader, source: Component): Float64Array {
+  const { solution, system } = reader;
+  const driven = system.driven.find(({ designator }) => designator === source.designator)!;
+  const node = source.nodes[driven.sign === 1 ? 0 : 1];
+  const sum = new Float64Array(axisValues(solution.grid).length);
+  for (const other of solution.circuit.components) {
+    if (other === source) continue;
+    const sign = (other.nodes[0] === node ? 1 : 0) - (other.nodes[1] === node ? 1 : 0);
+    if (sign === 0) continue;
+    const current = readProperty(reader, other, 'i');
+    for (let k = 0; k < sum.length; k++) sum[k]! -= sign * driven.sign * current[k]!;
+  }
+  return sum;
+}
+
+/** A source's wave at the nodes of every step, each taken from the smooth piece that holds there. */
+function driveValues(solution: Solution, source: { readonly designator: string; readonly wave: Wave }): Float64Array {
   const { grid, request } = solution;
-  const drive = system.drives.find((candidate) => candidate.designator === designator)!;
   const times = axisValues(grid);
-  if (request.find === 'characteristic' && request.sweep === designator) return times;
-  return times.map((time, k) => {
-    const step = k >> 2;
-    const begin = grid[step]!;
-    const end = grid[step + 1] ?? begin;
-    if (request.find !== 'time response') return evaluateSegment(segmentAt(drive.wave, 1e-9), 0);
-    return evaluateSegment(segmentAt(drive.wave, (begin + end) / 2), time);
-  });
+  if (request.find === 'characteristic' && request.sweep === source.designator) return times;
+  if (request.find !== 'time response') {
+    const first = waveCorners(source.wave, 0, Number.POSITIVE_INFINITY, 1)[0];
+    const value = evaluateSegment(segmentAt(source.wave, first === undefined ? 1 : first / 2), 0);
+    return times.fill(value);
+  }
+  for (let step = 0; step + 1 < grid.length; step++) {
+    const segment = segmentAt(source.wave, (grid[step]! + grid[step + 1]!) / 2);
+    for (let k = 4 * step; k < 4 * step + 4; k++) times[k] = evaluateSegment(segment, times[k]!);
+  }
+  return times;
 }
 
 function axisValues(grid: Float64Array): Float64Array {

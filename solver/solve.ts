@@ -19,7 +19,7 @@ export function solve(circuit: Circuit, request: AnalysisRequest, accuracy: numb
   const system = buildSystem(circuit);
   const effort: Effort = { steps: 0, rejectedSteps: 0, newtonIterations: 0, factorisations: 0, events: 0 };
   const remarks = new Set<string>();
-  for (const drive of system.drives) {
+  for (const drive of [...system.drives, ...system.driven]) {
     const next = waveCorners(drive.wave, 0, Number.POSITIVE_INFINITY, 1)[0];
     drive.segment = segmentAt(drive.wave, next === undefined ? 1 : next / 2);
   }
@@ -30,7 +30,7 @@ export function solve(circuit: Circuit, request: AnalysisRequest, accuracy: numb
   const recorder = ((): { grid: Float64Array; unknowns: Float64Array; modes: Int8Array } => {
     switch (request.find) {
       case 'operating point': {
-        const y = new Float64Array(system.size + 1);
+        const y = new Float64Array(system.vectorLength);
         findOperatingPoint(system, y, { analysis: request.find, t: 0, effort, remarks });
         const unknowns = new Float64Array(4 * system.size);
         for (let s = 0; s < 4; s++) unknowns.set(y.subarray(0, system.size), s * system.size);

@@ -65,7 +65,7 @@ export function marchInTime(
   const { until, from } = request;
   const analysis = request.find;
   const corners = landingTimes(system, request);
-  const y = new Float64Array(system.size + 1);
+  const y = new Float64Array(system.vectorLength);
   const stepper = createStepper(system, effort);
   const march: March = {
     system,
@@ -98,7 +98,8 @@ export function marchInTime(
 function landingTimes(system: System, request: TimeResponseRequest): number[] {
   const { until, from } = request;
   const times = new Set<number>(from > 0 ? [from] : []);
-  for (const drive of system.drives) for (const corner of waveCorners(drive.wave, 0, until)) times.add(corner);
+  for (const drive of [...system.drives, ...system.driven])
+    for (const corner of waveCorners(drive.wave, 0, until)) times.add(corner);
   for (const device of system.modal)
     for (const toggle of device.toggles ?? []) if (toggle > 0 && toggle < until) times.add(toggle);
   const sorted = [...times].sort((a, b) => a - b);
@@ -109,7 +110,8 @@ function landingTimes(system: System, request: TimeResponseRequest): number[] {
 }
 
 function bindSegments(system: System, begin: number, end: number): void {
-  for (const drive of system.drives) drive.segment = segmentAt(drive.wave, begin + (end - begin) / 2);
+  for (const drive of [...system.drives, ...system.driven])
+    drive.segment = segmentAt(drive.wave, begin + (end - begin) / 2);
 }
 
 /** Sets `y` to what the response starts from; returns the charges and fluxes by row that it still lacks. */
@@ -146,14 +148,9 @@ function startingCharges(march: March, request: TimeResponseRequest): Float64Arr
 function enterSegment(march: March, begin: number, end: number): void {
   const { system } = march;
   let changed = false;
-  for (const drive of system.drives) {
+  for (const drive of [...system.drives, ...system.driven]) {
     const segment = segmentAt(drive.wave, begin + (end - begin) / 2);
-    if (
-      segment.slope !== drive.segment.slope ||
-      segment.offset !== drive.segment.offset ||
-      segment.sines !== drive.segment.sines
-    )
-      changed = changed || !sameSegment(segment, drive.segment, begin);
+    if (!sameSegment(segment, drive.segment, begin)) changed = true;
     drive.segment = segment;
   }
   system.modal.forEach((device, k) => {
@@ -178,7 +175,7 @@ function sameSegment(a: ReturnType<typeof segmentAt>, b: ReturnType<typeof segme
 }
 
 function restartHere(march: March): void {
-  const { system, stepper, y } = march;
+  const { stepper, y } = march;
   restart(stepper, march.t, march.span, undefined, y, march.context);
   updateScale(march);
   march.lastStep = 0;
@@ -194,7 +191,7 @@ function updateScale(march: March): void {
 function stepTo(march: March, end: number): void {
   const { system, stepper, y, context } = march;
   const start = new Float64Array(system.size + 1);
-  const scratch = new Float64Array(system.size + 1);
+  const scratch = new Float64Array(system.vectorLength);
   const longest = longestStep(march, end - march.t);
   const begin = march.t;
   if (march.h <= 0) march.h = 1e-4 * (end - begin);
@@ -293,7 +290,7 @@ function accept(march: March, end: number): void {
   const { system, stepper, y } = march;
   if (end > march.from) recordStep(march.recorder, march.t, end, y, stepper.z, system.modes);
   const increment = stepper.z[2];
-  for (let i = 0; i < system.size; i++) y[i]! += increment[i]!;
+  for (let i = 0; i < system.vectorLength; i++) y[i]! += increment[i]!;
   march.t = end;
   stepper.effort.steps++;
   updateScale(march);
@@ -302,7 +299,7 @@ function accept(march: March, end: number): void {
 /** The tolerance of each unknown: relative to itself, or to a fraction of the largest of its kind so far. */
 function setWeights(march: March): void {
   const { system, stepper, y, tolerance, scale } = march;
-  const nodes = system.nodeIndex.size - 1;
+  const nodes = system.nodeCount;
   const voltage = SCALE_FRACTION * scale.voltage;
   const current = SCALE_FRACTION * scale.current;
   for (let i = 0; i < system.size; i++) {
@@ -340,9 +337,11 @@ const OUTPUT_FRACTION = 0.3;
 /** No step is longer than what its dense output can follow of the fastest sine. */
 function longestStep(march: March, stretch: number): number {
   let fastest = 0;
-  for (const drive of march.system.drives) fastest = Math.max(fastest, highestAngularFrequency(drive.segment));
-  // cubic through the collocation nodes: error about (ωh)⁴ / 1000
-  const resolved = fastest > 0 ? (1000 * march.tolerance) ** 0.25 / fastest : Number.POSITIVE_INFINITY;
+  for (const drive of [...march.system.drives, ...march.system.driven])
+    fastest = Math.max(fastest, highestAngularFrequency(drive.segment));
+  // cubic through the collocation nodes: error about (ωh)⁴ / 1000; its derivative, where currents are one: (ωh)³ / 50
+  const angle = needsProbe(march.system) ? (50 * march.tolerance) ** (1 / 3) : (1000 * march.tolerance) ** 0.25;
+  const resolved = fastest > 0 ? angle / fastest : Number.POSITIVE_INFINITY;
   return Math.min(stretch, Math.max(resolved, 1e-9 * stretch));
 }
 
@@ -373,7 +372,7 @@ function arrival(march: March, scratch: Float64Array): FoundEvent | undefined {
   if (!aim || aim.quantity !== 'current' || !needsProbe(system)) return undefined;
   const device = system.modal[aim.device]!;
   const exit = device.modes[system.modes[aim.device]!]!.exits.find(({ to }) => to === aim.mode)!;
-  for (let i = 0; i < system.size; i++) scratch[i] = y[i]! + stepper.z[2][i]!;
+  for (let i = 0; i < system.vectorLength; i++) scratch[i] = y[i]! + stepper.z[2][i]!;
   const margin = exitMargin(exit, device, scratch);
   return Math.abs(margin) <= DERIVATIVE_ROUNDING * march.scale.current ? { ...aim, at: 1 } : undefined;
 }

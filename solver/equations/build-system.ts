@@ -6,15 +6,16 @@ import { buildMonotoneCubic, evaluateMonotoneCubic } from '../devices/monotone-c
 import { buildPattern, slotOf } from '../linear/pattern.ts';
 import { segmentAt } from '../wave-evaluation.ts';
 import { floatingIslands } from './floating-islands.ts';
-import type { Drive, ModalDevice, Mode, NonlinearLaw, System } from './system.ts';
+import type { Drive, DrivenNode, ModalDevice, Mode, NonlinearLaw, System } from './system.ts';
 import { setMode } from './system.ts';
 
 /** Builds the equations at the circuit's own temperature. The circuit has been checked: names resolve, values are sound. */
 export function buildSystem(circuit: Circuit): System {
-  const { nodes, branches } = listUnknowns(circuit);
+  const { nodes, branches, drivenBy } = listUnknowns(circuit);
   const size = nodes.length + branches.length;
   const nodeIndex = new Map<string, number>(nodes.map((node, index) => [node, index]));
   nodeIndex.set(REFERENCE_NODE, size);
+  for (const node of drivenBy.values()) nodeIndex.set(node, nodeIndex.size + branches.length);
   const branchIndex = new Map<string, number>(branches.map((name, index) => [name, nodes.length + index]));
 
   const positions: [number, number][] = [];
@@ -28,10 +29,13 @@ export function buildSystem(circuit: Circuit): System {
       return index;
     },
     branch: (designator) => branchIndex.get(designator),
+    row: (name) => Math.min(stamp.node(name), size),
+    drivenNode: (designator) => drivenBy.get(designator),
     conductance: (row, column, value) => linear.push({ row, column, value }),
     storage: (row, column, value) => storage.push({ row, column, value }),
     reserve: (row, column) => positions.push([row, column]),
     drives: [],
+    driven: [],
     laws: [],
     modal: [],
   };
@@ -45,6 +49,13 @@ export function buildSystem(circuit: Circuit): System {
     size,
     positions.filter(([row, column]) => row < size && column < size),
   );
+  const drivenPattern = buildPattern(
+    size,
+    positions.filter(([row, column]) => row < size && column > size),
+  );
+  const drivenEntries = drivenPattern.column.length;
+  const drivenSlot = (row: number, column: number): number =>
+    row < size && column > size ? slotOf(drivenPattern, row, column) : drivenEntries;
   const entries = pattern.column.length;
   const slot = (row: number, column: number): number =>
     row < size && column < size ? slotOf(pattern, row, column) : entries;
@@ -54,6 +65,11 @@ export function buildSystem(circuit: Circuit): System {
     values[entries] = 0;
     return values;
   };
+  const drivenValuesOf = (list: readonly Entry[]): Float64Array => {
+    const values = new Float64Array(drivenEntries + 1);
+    for (const { row, column, value } of list) values[drivenSlot(row, column)]! += value;
+    return values;
+  };
   const storageValues = valuesOf(storage);
   const dynamic = Array.from({ length: size }, () => false);
   for (let s = 0; s < entries; s++) if (storageValues[s] !== 0) dynamic[pattern.column[s]!] = true;
@@ -61,14 +77,20 @@ export function buildSystem(circuit: Circuit): System {
   const system: System = {
     circuit,
     size,
+    vectorLength: size + 1 + drivenBy.size,
+    nodeCount: nodes.length,
     names: [...nodes, ...branches.map((name) => `${name}.i`)],
     pattern,
+    drivenPattern,
     nodeIndex,
     branchIndex,
     conductance: valuesOf(linear),
     storage: storageValues,
+    conductanceOfDriven: drivenValuesOf(linear),
+    storageOfDriven: drivenValuesOf(storage),
     constant: new Float64Array(size + 1),
     drives: stamp.drives,
+    driven: stamp.driven,
     laws: stamp.laws.map((law) => ({
       ...law,
       slots: [
@@ -85,6 +107,7 @@ export function buildSystem(circuit: Circuit): System {
         slot(device.branch, device.second),
         slot(device.branch, device.branch),
       ],
+      drivenSlots: [drivenSlot(device.branch, device.first), drivenSlot(device.branch, device.second)],
     })),
     modes: new Int8Array(stamp.modal.length),
     islands,
@@ -105,15 +128,21 @@ interface Stamp {
   readonly size: number;
   readonly node: (name: string) => number;
   readonly branch: (designator: string) => number | undefined;
+  /** The node's own equation; the unread row for the reference and driven nodes. */
+  readonly row: (name: string) => number;
+  /** The node whose potential this source fixes. */
+  readonly drivenNode: (designator: string) => string | undefined;
   readonly conductance: (row: number, column: number, value: number) => void;
   readonly storage: (row: number, column: number, value: number) => void;
   readonly reserve: (row: number, column: number) => void;
   readonly drives: Drive[];
+  readonly driven: DrivenNode[];
   readonly laws: Omit<NonlinearLaw, 'slots'>[];
-  readonly modal: Omit<ModalDevice, 'slots'>[];
+  readonly modal: Omit<ModalDevice, 'slots' | 'drivenSlots'>[];
 }
 
-function listUnknowns(circuit: Circuit): { nodes: string[]; branches: string[] } {
+/** Nodes and branches that are unknowns, and the sources that fix a node's potential by their designators. */
+function listUnknowns(circuit: Circuit): { nodes: string[]; branches: string[]; drivenBy: Map<string, string> } {
   const nodes = new Set<string>();
   const sensed = new Set<string>();
   for (const component of circuit.components) {
@@ -126,10 +155,19 @@ function listUnknowns(circuit: Circuit): { nodes: string[]; branches: string[] }
     }
   }
   nodes.delete(REFERENCE_NODE);
+  const drivenBy = new Map<string, string>();
+  for (const component of circuit.components) {
+    if (component.kind !== 'source' || sensed.has(component.designator)) continue;
+    const [first, second] = component.nodes;
+    const node = first === REFERENCE_NODE ? second : first;
+    if (second !== REFERENCE_NODE && first !== REFERENCE_NODE) continue;
+    if (nodes.delete(node)) drivenBy.set(component.designator, node);
+  }
   const branches = circuit.components
+    .filter(({ designator }) => !drivenBy.has(designator))
     .filter((component) => sensed.has(component.designator) || hasOwnBranch(component))
     .map((component) => component.designator);
-  return { nodes: [...nodes], branches };
+  return { nodes: [...nodes], branches, drivenBy };
 }
 
 /** Components whose law does not give the current from the voltages: the current is an unknown with a row of its own. */
@@ -154,13 +192,15 @@ function addComponent(stamp: Stamp, component: Component, circuit: Circuit): voi
   const first = stamp.node(component.nodes[0]);
   const second = stamp.node(component.nodes[1]);
   const branch = stamp.branch(component.designator);
+  const firstRow = stamp.row(component.nodes[0]);
+  const secondRow = stamp.row(component.nodes[1]);
   if (branch !== undefined) {
-    stamp.conductance(first, branch, 1);
-    stamp.conductance(second, branch, -1);
+    stamp.conductance(firstRow, branch, 1);
+    stamp.conductance(secondRow, branch, -1);
   }
   // Rows that a current given by a law goes to: its nodes, or, where the current is an unknown, the row `i - law = 0`.
-  const plus = branch === undefined ? first : stamp.size;
-  const minus = branch === undefined ? second : branch;
+  const plus = branch === undefined ? firstRow : stamp.size;
+  const minus = branch === undefined ? secondRow : branch;
   if (branch !== undefined && !hasOwnBranch(component)) stamp.conductance(branch, branch, 1);
   const between = (add: Stamp['conductance'], value: number, from = first, to = second): void => {
     add(plus, from, value);
@@ -187,6 +227,12 @@ function addComponent(stamp: Stamp, component: Component, circuit: Circuit): voi
       stamp.storage(branch!, branch!, -component.inductance * scale(component.temperatureCoefficient));
       return;
     case 'source':
+      if (stamp.drivenNode(designator) !== undefined) {
+        const sign = component.nodes[0] === REFERENCE_NODE ? -1 : 1;
+        const index = stamp.node(stamp.drivenNode(designator)!);
+        stamp.driven.push({ designator, wave: component.wave, index, sign, segment: START });
+        return;
+      }
       branchVoltage();
       stamp.drives.push({ designator, wave: component.wave, plus: stamp.size, minus: branch!, segment: START });
       return;
@@ -287,7 +333,7 @@ function switchDevice(
   first: number,
   second: number,
   branch: number,
-): Omit<ModalDevice, 'slots'> {
+): Omit<ModalDevice, 'slots' | 'drivenSlots'> {
   reserveBranch(stamp, branch, first, second);
   const { drive } = component;
   const byVoltage = drive.by === 'voltage';
@@ -328,7 +374,7 @@ function thresholdDevice(
   first: number,
   second: number,
   branch: number,
-): Omit<ModalDevice, 'slots'> {
+): Omit<ModalDevice, 'slots' | 'drivenSlots'> {
   reserveBranch(stamp, branch, first, second);
   const forward =
     law.forwardVoltage + (law.temperatureCoefficient ?? 0) * (temperature - (law.at ?? REFERENCE_TEMPERATURE));

@@ -3,8 +3,12 @@
  * P. A. Brennan, 1975; M. Günther and U. Feldmann, 1999). One row for each node but the reference (currents leaving sum to zero), one for
  * each branch whose current is an unknown. The unknowns y are the node potentials (volt), then those currents (ampere).
  *
- * Vectors have one element more than there are unknowns, and arrays of matrix values one more than the pattern has
- * entries: the reference node reads 0 from there and writes what nobody reads, so no kernel needs a branch for it.
+ * A node that an independent source ties to the reference is no unknown: its potential is known ("driven"), which halves the
+ * size of the usual small circuit. The source's current follows from the node's other currents.
+ *
+ * Vectors hold the n unknowns, then the reference node (always 0; what is written to row n, nobody reads), then the driven
+ * nodes' potentials: `vectorLength` elements. Arrays of matrix values have one element more than the pattern has entries, for the same
+ * reason: no kernel needs a branch for the reference node.
  */
 import type { Circuit } from '../circuit.ts';
 import type { Pattern } from '../linear/pattern.ts';
@@ -15,9 +19,15 @@ export interface System {
   readonly circuit: Circuit;
   /** Number of unknowns n. */
   readonly size: number;
+  /** n + 1 + the number of driven nodes. */
+  readonly vectorLength: number;
+  /** Number of unknowns that are node potentials; they come first. */
+  readonly nodeCount: number;
   readonly names: readonly string[];
   readonly pattern: Pattern;
-  /** Index of a node's potential; the reference node has index n. */
+  /** Entries of the driven nodes' columns, n rows; columns count from n + 1. */
+  readonly drivenPattern: Pattern;
+  /** Index of a node's potential in a vector; the reference node has index n, driven nodes follow. */
   readonly nodeIndex: ReadonlyMap<string, number>;
   /** Index of a component's current, where it is an unknown. */
   readonly branchIndex: ReadonlyMap<string, number>;
@@ -25,9 +35,15 @@ export interface System {
   readonly conductance: Float64Array;
   /** dq/dy on the pattern: q is linear. */
   readonly storage: Float64Array;
+  /** The same by the driven nodes' potentials, on `drivenPattern`. */
+  readonly conductanceOfDriven: Float64Array;
+  readonly storageOfDriven: Float64Array;
   /** Constant part of f by row. */
   readonly constant: Float64Array;
+  /** Sources that add to the equations. */
   readonly drives: readonly Drive[];
+  /** Sources that fix a node's potential. */
+  readonly driven: readonly DrivenNode[];
   readonly laws: readonly NonlinearLaw[];
   readonly modal: readonly ModalDevice[];
   /** Current mode of each modal device. */
@@ -51,6 +67,15 @@ export interface Drive {
   readonly plus: number;
   readonly minus: number;
   /** The smooth piece in force; the time stepper changes it at corners. */
+  segment: WaveSegment;
+}
+
+/** y[index] = sign · value(t) */
+export interface DrivenNode {
+  readonly designator: string;
+  readonly wave: Wave;
+  readonly index: number;
+  readonly sign: 1 | -1;
   segment: WaveSegment;
 }
 
@@ -83,6 +108,8 @@ export interface ModalDevice {
   readonly initialMode: number;
   /** Slots of (branch, first), (branch, second), (branch, branch). */
   readonly slots: readonly [number, number, number];
+  /** Slots of (branch, first) and (branch, second) on `drivenPattern`. */
+  readonly drivenSlots: readonly [number, number];
 }
 
 /** voltage · (v_first - v_second) + current · i + constant = 0 */
@@ -116,17 +143,20 @@ export function setMode(system: System, device: number, mode: number, leak = 0):
   system.conductance[first] = across;
   system.conductance[second] = -across;
   system.conductance[own] = current;
+  const [drivenFirst, drivenSecond] = modal.drivenSlots;
+  system.conductanceOfDriven[drivenFirst] = across;
+  system.conductanceOfDriven[drivenSecond] = -across;
   system.constant[modal.branch] = constant;
   system.modes[device] = mode;
 }
 
 /** How far an exit's condition is fulfilled: above zero, the device must change its mode. */
-export function exitMargin(exit: Exit, device: ModalDevice, y: Float64Array, offset = 0): number {
+export function exitMargin(exit: Exit, device: ModalDevice, y: Float64Array): number {
   let quantity: number;
-  if (exit.quantity === 'current') quantity = y[offset + device.branch]!;
+  if (exit.quantity === 'current') quantity = y[device.branch]!;
   else {
     const [first, second] = exit.quantity === 'control' ? device.control! : [device.first, device.second];
-    quantity = y[offset + first]! - y[offset + second]!;
+    quantity = y[first]! - y[second]!;
   }
   return exit.sign * (quantity - exit.level);
 }

@@ -29,8 +29,7 @@ export function findEvent(
       const tolerance = EVENT_TOLERANCE * (exit.quantity === 'current' ? scale.current : scale.voltage);
       const at = (increment: Float64Array | undefined): number => {
         if (!increment) return exitMargin(exit, modal, y);
-        for (let i = 0; i < system.size; i++) scratch[i] = y[i]! + increment[i]!;
-        scratch[system.size] = 0;
+        for (let i = 0; i < system.vectorLength; i++) scratch[i] = y[i]! + increment[i]!;
         return exitMargin(exit, modal, scratch);
       };
       const margins = [at(undefined), at(z[0]), at(z[1]), at(z[2])] as const;
