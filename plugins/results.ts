@@ -76,6 +76,8 @@ export interface Curve {
   readonly side: 'left' | 'right';
   readonly conditions: readonly { readonly name: string; readonly text: string; readonly value: number }[];
   readonly waveform: Waveform;
+  /** Horizontal values in place of the grid (`against:`); on the same grid as `waveform`. */
+  readonly against?: Waveform;
 }
 
 export interface SolvedPlot {

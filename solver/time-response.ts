@@ -369,7 +369,7 @@ function planLanding(march: March, event: FoundEvent, h: number): 'at the end' |
 function arrival(march: March, scratch: Float64Array): FoundEvent | undefined {
   const { aim, system, y, stepper } = march;
   march.aim = undefined;
-  if (!aim || aim.quantity !== 'current' || !needsProbe(system)) return undefined;
+  if (aim?.quantity !== 'current' || !needsProbe(system)) return undefined;
   const device = system.modal[aim.device]!;
   const exit = device.modes[system.modes[aim.device]!]!.exits.find(({ to }) => to === aim.mode)!;
   for (let i = 0; i < system.vectorLength; i++) scratch[i] = y[i]! + stepper.z[2][i]!;

@@ -29,6 +29,8 @@ export interface Note {
   readonly file: string;
   /** File name without `.md`; other notes refer to it by this. */
   readonly id: string;
+  /** The whole file as read: messages quote its lines. */
+  readonly text: string;
   readonly titleBlock: TitleBlock;
   /** The blocks that could be read, in the note's order. */
   readonly blocks: readonly Block[];
