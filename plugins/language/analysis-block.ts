@@ -191,7 +191,7 @@ function findCircuit(
 
 function readFind(tree: YamlMapping, start: Place): Find | undefined {
   const entry = entryOf(tree, 'find');
-  if (!entry || entry.value.type !== 'scalar') {
+  if (entry?.value.type !== 'scalar') {
     report(tree.passage, entry?.value.place ?? start, NOTHING_TO_FIND);
     return undefined;
   }
@@ -271,7 +271,7 @@ function readCharacteristic(values: FieldValues, circuit: Circuit | undefined): 
   const sweep = values.entries.get('sweep')?.value;
   if (!sweep) return undefined;
   const only = sweep.type === 'mapping' && sweep.entries.length === 1 ? sweep.entries[0]! : undefined;
-  if (!only || only.value.type !== 'sequence' || only.value.items.length !== 2) {
+  if (only?.value.type !== 'sequence' || only.value.items.length !== 2) {
     report(sweep.passage, only?.value.place ?? sweep.place, {
       message: '`sweep` does not state one source and the two ends of its range',
       expected: 'a designator and two values',

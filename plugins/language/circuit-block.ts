@@ -81,6 +81,8 @@ export function readCircuitBlock(fence: Fence, surroundings: Surroundings): Circ
     if (output) outputs.push(output);
     else ok = false;
   }
+  // Of a designator that comes twice, the second component is looked at as well, for its own mistakes.
+  for (const item of entry.value.repeated) readComponent(item, surroundings, []);
   if (!ok) return { name: fence.name, passage, place, pins, designators };
 
   const temperature = values.quantities.get('temperature')?.value ?? REFERENCE_TEMPERATURE;

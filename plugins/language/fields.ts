@@ -3,7 +3,7 @@
  * editors. What a table cannot say is read by the code that owns it.
  */
 import type { Place } from './model.ts';
-import { expectedName, list } from './nearest.ts';
+import { expectedName, list, nearest } from './nearest.ts';
 import { report } from './passage.ts';
 import { type Due, parseScalar, type Scalar } from './scalar.ts';
 import { isEmpty, placeWithin, type YamlEntry, type YamlMapping, type YamlNode, type YamlScalar } from './yaml-tree.ts';
@@ -49,6 +49,8 @@ export function readFields(mapping: YamlMapping, fields: readonly Field[], owner
   const truths = new Map<string, boolean>();
   const entries = new Map<string, YamlEntry>();
   let ok = true;
+  /** Keys that a misspelt one probably meant: they are not called missing too. */
+  const meant = new Set<string | undefined>();
 
   const put = (field: Field, value: string | boolean | Scalar | undefined) => {
     if (value === undefined) ok = false;
@@ -60,11 +62,9 @@ export function readFields(mapping: YamlMapping, fields: readonly Field[], owner
   for (const entry of mapping.entries) {
     const field = fields.find((known) => known.key === entry.key);
     if (!field) {
-      reportUnknownKey(
-        entry,
-        fields.map((known) => known.key),
-        owner,
-      );
+      const known = fields.map(({ key }) => key);
+      reportUnknownKey(entry, known, owner);
+      meant.add(nearest(entry.key, known));
       ok = false;
       continue;
     }
@@ -82,11 +82,12 @@ export function readFields(mapping: YamlMapping, fields: readonly Field[], owner
   for (const field of fields) {
     if (mapping.entries.some((entry) => entry.key === field.key)) continue;
     if (field.required) {
+      ok = false;
+      if (meant.has(field.key)) continue;
       report(mapping.passage, place ?? mapping.place, {
         message: `${owner} has no \`${field.key}\``,
         expected: `\`${field.key}\`: ${takenInWords(field.takes)}`,
       });
-      ok = false;
     } else if (field.default !== undefined && field.takes.form !== 'structure') {
       put(field, defaultOf(field));
     }

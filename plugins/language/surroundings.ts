@@ -34,7 +34,7 @@ export function surroundingsOf(folders: Folders, problems: Problem[], dependenci
       if (text === undefined) {
         report(node.passage, node.place, {
           message: `there is no part \`${name}\``,
-          expected: expectedName(name, partNames(folders.partsFolder)),
+          expected: expectedPart(name, folders),
         });
         return undefined;
       }
@@ -67,6 +67,12 @@ export function surroundingsOf(folders: Folders, problems: Problem[], dependenci
     return content;
   };
   return { part, text };
+}
+
+function expectedPart(name: string, folders: Folders): string {
+  const names = partNames(folders.partsFolder);
+  if (names.length > 0) return expectedName(name, names);
+  return `the name of a file in ${shownPath(folders.partsFolder, folders.projectRoot)}, which holds none`;
 }
 
 /** A path as messages name it: relative to the project where it lies inside. */
