@@ -17,3 +17,11 @@ export interface Waveform {
   /** Values at the four nodes of each step, length 4 N; the value may jump between steps. */
   readonly values: Float64Array;
 }
+
+/** Why a functional has no value for a waveform, in words that complete "no value: ...". */
+export interface NoValue {
+  readonly none: string;
+}
+
+/** A number, or the reason why there is none. */
+export type Outcome = number | NoValue;
