@@ -86,7 +86,11 @@ export function formatProblem(problem: Problem): string {
   return text.join('\n');
 }
 
-/** By line, then column; problems of one place stay in their order. */
-export function sortProblems(problems: readonly Problem[]): Problem[] {
-  return [...problems].sort((left, right) => left.line - right.line || left.column - right.column);
+/** Those of `file` first, by line, then column; then other files. Problems of one place stay in their order. */
+export function sortProblems(problems: readonly Problem[], file: string): Problem[] {
+  const rank = (problem: Problem) => (problem.file === file ? '' : problem.file);
+  return [...problems].sort((left, right) => {
+    if (rank(left) !== rank(right)) return rank(left) < rank(right) ? -1 : 1;
+    return left.line - right.line || left.column - right.column;
+  });
 }

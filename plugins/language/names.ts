@@ -5,11 +5,13 @@ import type { YamlNode, YamlScalar } from './yaml-tree.ts';
 const NAME = /^[A-Za-z_][A-Za-z0-9_]*$/;
 /** Words of expressions. */
 const RESERVED = ['and', 'or', 'not'];
+/** Would reach beyond an object that is keyed by names. */
+const UNSAFE = '__proto__';
 
 /** Checks a name and reports what is wrong with it; `what` is the thing named, with its article. */
 export function checkName(node: YamlScalar, what: string): string | undefined {
   const name = node.text.trim();
-  if (NAME.test(name) && !RESERVED.includes(name)) return name;
+  if (NAME.test(name) && !RESERVED.includes(name) && name !== UNSAFE) return name;
   report(node.passage, node.place, {
     message: RESERVED.includes(name)
       ? `\`${name}\` is a word of expressions and cannot name ${what}`
@@ -28,7 +30,11 @@ export interface NamedNode {
 export function readTwoNodes(value: YamlNode, key: string): readonly [NamedNode, NamedNode] | undefined {
   const items = value.type === 'sequence' ? value.items : undefined;
   if (items?.length !== 2) {
-    const found = items ? `${items.length} nodes` : value.type === 'mapping' ? 'a mapping' : 'one name';
+    const found = items
+      ? `${items.length} ${items.length === 1 ? 'node' : 'nodes'}`
+      : value.type === 'mapping'
+        ? 'a mapping'
+        : 'one name';
     report(value.passage, value.place, {
       message: `\`${key}\` holds ${found}, and two nodes are due`,
       expected: 'the first and the second node',

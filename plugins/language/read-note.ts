@@ -80,7 +80,7 @@ export function readNote(text: string, options: ReadOptions): Note {
     titleBlock,
     blocks: blocks.filter((block) => block !== undefined).sort((left, right) => left.line - right.line),
     inlineValues,
-    problems: sortProblems(withoutRepeats(problems)),
+    problems: sortProblems(withoutRepeats(problems), file),
     dependencies: [...dependencies].sort(),
   };
 }

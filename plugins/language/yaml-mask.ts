@@ -14,7 +14,7 @@ const STAND_IN = '\ue000';
 const COMPARISON = />(?![-+]?[ \t]*(?:#.*)?$)/gm;
 
 /** A call's arguments, without quotes, braces, comments or keys in them, innermost first. */
-const PARENTHESES = /\([^()'"{}#\n\ue001\ue002]*\)/g;
+const PARENTHESES = /\([^()'"{}#\n]*\)/g;
 const KEY_WITHIN = /:\s/;
 
 /** The text for the reader of structure: as long as the original, character for character. */
