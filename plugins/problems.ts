@@ -86,8 +86,11 @@ export function formatProblem(problem: Problem): string {
   return text.join('\n');
 }
 
-/** Those of `file` first, by line, then column; then other files. Problems of one place stay in their order. */
-export function sortProblems(problems: readonly Problem[], file: string): Problem[] {
+/**
+ * Those of `file` first (default: of the file that comes first in the list), by line, then column; then other files by
+ * name. Problems of one place stay in their order.
+ */
+export function sortProblems(problems: readonly Problem[], file = problems[0]?.file): Problem[] {
   const rank = (problem: Problem) => (problem.file === file ? '' : problem.file);
   return [...problems].sort((left, right) => {
     if (rank(left) !== rank(right)) return rank(left) < rank(right) ? -1 : 1;

@@ -13,7 +13,7 @@ import { report } from './passage.ts';
 import type { Due } from './scalar.ts';
 import { entryOf, readYaml, reportRepeatedKeys, type YamlEntry, type YamlMapping, type YamlNode } from './yaml-tree.ts';
 
-type Find = AnalysisRequest['find'];
+type Find = Exclude<AnalysisRequest['find'], 'steady state' | 'frequency response'>;
 
 export const FINDS: readonly Find[] = ['operating point', 'characteristic', 'time response'];
 const FINDS_TO_COME: readonly string[] = ['steady state', 'frequency response'];
