@@ -34,7 +34,19 @@ export interface TimeResponseRequest {
  */
 export type StartingState = 'operating point' | 'rest' | { readonly [designator: string]: number };
 
-export type AnalysisRequest = OperatingPointRequest | CharacteristicRequest | TimeResponseRequest;
+/** One period of the response that repeats itself for ever. */
+export interface SteadyStateRequest {
+  readonly find: 'steady state';
+  /** Seconds; default the sources' common period. */
+  readonly period?: number;
+}
+
+export type AnalysisRequest = OperatingPointRequest | CharacteristicRequest | TimeResponseRequest | SteadyStateRequest;
+
+/** True where the axis of the solution is time. */
+export function isOverTime(request: AnalysisRequest): boolean {
+  return request.find === 'time response' || request.find === 'steady state';
+}
 
 /** Effort spent, for the colophon and the benchmarks. */
 export interface Effort {
@@ -67,6 +79,8 @@ export interface Solution {
   readonly unknownNames: readonly string[];
   /** Mode of every threshold device and switch (column) in every step (row), as numbered by its device. */
   readonly modes: Int8Array;
+  /** Conductance across every exponential junction (siemens) that the solution was found with; usually 0. */
+  readonly junctionLeak: number;
   readonly effort: Effort;
   readonly audit: Audit;
   /** What the reader should know: fallbacks used, assumptions taken. */

@@ -1,5 +1,5 @@
 /** Reading quantities off a solution: a node's potential, or a component's voltage, current, power, charge, flux or energy. */
-import type { Solution } from './analysis.ts';
+import { isOverTime, type Solution } from './analysis.ts';
 import type { Circuit, Component } from './circuit.ts';
 import { REFERENCE_NODE } from './circuit.ts';
 import { buildSystem } from './equations/build-system.ts';
@@ -65,6 +65,7 @@ function readerOf(solution: Solution): Reader {
     systems.set(solution.circuit, system);
   }
   const built = system;
+  built.junctionLeak.siemens = solution.junctionLeak;
   const { size, nodeIndex } = built;
   const count = 4 * (solution.grid.length - 1 || 1);
   const unknown = (index: number): Float64Array => {
@@ -191,7 +192,7 @@ function driveValues(solution: Solution, source: { readonly designator: string; 
   const { grid, request } = solution;
   const times = axisValues(grid);
   if (request.find === 'characteristic' && request.sweep === source.designator) return times;
-  if (request.find !== 'time response') {
+  if (!isOverTime(request)) {
     const first = waveCorners(source.wave, 0, Number.POSITIVE_INFINITY, 1)[0];
     const value = evaluateSegment(segmentAt(source.wave, first === undefined ? 1 : first / 2), 0);
     return times.fill(value);

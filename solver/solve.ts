@@ -5,6 +5,8 @@ import { traceCharacteristic } from './characteristic.ts';
 import type { Circuit } from './circuit.ts';
 import { buildSystem } from './equations/build-system.ts';
 import { findOperatingPoint } from './operating-point.ts';
+import { settle } from './steady-state/settled-waves.ts';
+import { findSteadyState } from './steady-state/shooting.ts';
 import { marchInTime } from './time-response.ts';
 import { segmentAt, waveCorners } from './wave-evaluation.ts';
 
@@ -15,7 +17,8 @@ export const SOLVER_VERSION = '1';
  * Solves the analysis. `accuracy` is the relative accuracy that figures drawn from the solution are meant to keep.
  * Throws `NoSolution` where there is none to be found.
  */
-export function solve(circuit: Circuit, request: AnalysisRequest, accuracy: number): Solution {
+export function solve(asked: Circuit, request: AnalysisRequest, accuracy: number): Solution {
+  const circuit = request.find === 'steady state' ? settle(asked) : asked;
   const system = buildSystem(circuit);
   const effort: Effort = { steps: 0, rejectedSteps: 0, newtonIterations: 0, factorisations: 0, events: 0 };
   const remarks = new Set<string>();
@@ -40,6 +43,8 @@ export function solve(circuit: Circuit, request: AnalysisRequest, accuracy: numb
         return trim(traceCharacteristic(system, request, accuracy, effort, remarks));
       case 'time response':
         return trim(marchInTime(system, request, accuracy, effort, remarks).recorder);
+      case 'steady state':
+        return trim(findSteadyState(system, request, accuracy, effort, remarks));
     }
   })();
   const solution = {
@@ -47,6 +52,7 @@ export function solve(circuit: Circuit, request: AnalysisRequest, accuracy: numb
     request,
     ...recorder,
     unknownNames: system.names,
+    junctionLeak: system.junctionLeak.siemens,
     effort,
     audit: NOT_AUDITED,
     remarks: [...remarks],

@@ -8,7 +8,14 @@ import { evaluateCurrents } from './equations/evaluate.ts';
 import type { System } from './equations/system.ts';
 import { exitMargin, setMode } from './equations/system.ts';
 import { type FoundEvent, findEvent } from './integrator/events.ts';
-import { createStepper, estimateError, forgetHistory, type Stepper, solveStages } from './integrator/radau-step.ts';
+import {
+  createStepper,
+  estimateError,
+  forgetHistory,
+  type Stepper,
+  solveStages,
+  solveStagesRobustly,
+} from './integrator/radau-step.ts';
 import { createRecorder, type Recorder, recordStep } from './integrator/recorder.ts';
 import { needsProbe, restart, unsettled } from './integrator/restart.ts';
 import { findOperatingPoint, type StaticContext, unknownScale } from './operating-point.ts';
@@ -28,7 +35,18 @@ const MAXIMUM_CHATTER = 100;
 
 export interface TimeMarch {
   readonly recorder: Recorder;
-  readonly stepper: Stepper;
+  /** Unknowns at the end, a vector. */
+  readonly y: Float64Array;
+  /** Instants of the march that do not depend on the state: corners of sources, toggles, the end. */
+  readonly fixedTimes: readonly number[];
+}
+
+/** A march that goes on from known values instead of the request's start. */
+export interface GivenStart {
+  readonly y: Float64Array;
+  readonly modes: Int8Array;
+  /** Charges and fluxes by row that y lacks. */
+  readonly missing?: Float64Array;
 }
 
 interface March {
@@ -61,9 +79,10 @@ export function marchInTime(
   accuracy: number,
   effort: Effort,
   remarks: Set<string>,
+  given?: GivenStart,
+  analysis: string = request.find,
 ): TimeMarch {
   const { until, from } = request;
-  const analysis = request.find;
   const corners = landingTimes(system, request);
   const y = new Float64Array(system.vectorLength);
   const stepper = createStepper(system, effort);
@@ -85,13 +104,19 @@ export function marchInTime(
   };
   stepper.newtonTolerance = Math.max((10 * 2.2e-16) / march.tolerance, Math.min(0.01, Math.sqrt(march.tolerance)));
   bindSegments(system, 0, corners[0]!);
-  restart(stepper, 0, until, startingCharges(march, request), y, march.context);
+  if (given) {
+    y.set(given.y);
+    given.modes.forEach((mode, k) => {
+      setMode(system, k, mode);
+    });
+  }
+  restart(stepper, 0, until, given ? given.missing : startingCharges(march, request), y, march.context);
   updateScale(march);
   for (const [k, corner] of corners.entries()) {
     if (k > 0) enterSegment(march, corners[k - 1]!, corner);
     stepTo(march, corner);
   }
-  return { recorder: march.recorder, stepper };
+  return { recorder: march.recorder, y, fixedTimes: corners };
 }
 
 /** Corners of all sources, toggles of switches, and where keeping begins; ends with `until`. */
@@ -200,6 +225,7 @@ function stepTo(march: March, end: number): void {
   march.h = Math.min(march.h, longest);
   const { effort } = stepper;
   let failures = 0;
+  let newtonFailures = 0;
   let rejected = false;
   while (march.t < end) {
     if (effort.steps + effort.rejectedSteps > MAXIMUM_STEPS) {
@@ -213,13 +239,23 @@ function stepTo(march: March, end: number): void {
       last = true;
     } else if (2 * h > left) h = left / 2;
     setWeights(march);
-    if (!solveStages(stepper, march.t, h, y)) {
+    // twice refused by the simplified iteration, a step is worth a full one
+    const solved =
+      newtonFailures < 2 ? solveStages(stepper, march.t, h, y) : solveStagesRobustly(stepper, march.t, h, y);
+    newtonFailures = solved ? 0 : newtonFailures + 1;
+    if (!solved) {
       effort.rejectedSteps++;
       failures++;
       forgetHistory(stepper);
       march.h = h * (failures > 3 ? 0.1 : 0.4);
       rejected = true;
       if (march.h < 1e-14 * march.span || failures > 60) {
+        if (tieDown(march)) {
+          march.h = 1e-3 * (end - march.t);
+          failures = 0;
+          newtonFailures = 0;
+          continue;
+        }
         throw unsettled(
           stepper,
           march.t,
@@ -284,6 +320,19 @@ function stepTo(march: March, end: number): void {
     rejected = false;
     failures = 0;
   }
+}
+
+/** Siemens across junctions where blocked ones alone leave a node loose. */
+const JUNCTION_LEAK = 1e-12;
+
+/** The last resort: nodes between blocked junctions are held by a leak across each. False where that has been done already. */
+function tieDown(march: March): boolean {
+  const { junctionLeak, laws } = march.system;
+  if (junctionLeak.siemens > 0 || laws.length === 0) return false;
+  junctionLeak.siemens = JUNCTION_LEAK;
+  march.context.remarks.add('junctions were given a leak of 1 pS, since blocked ones alone leave a node loose');
+  restartHere(march);
+  return true;
 }
 
 function accept(march: March, end: number): void {

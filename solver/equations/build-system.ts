@@ -1,7 +1,7 @@
 /** From the checked circuit to its equations: which unknowns there are, and what each component adds to which row. */
 import type { Circuit, Component, ControlledSource, Diode, Switch, ThresholdLaw } from '../circuit.ts';
 import { REFERENCE_NODE, REFERENCE_TEMPERATURE } from '../circuit.ts';
-import { criticalVoltage, evaluateJunction, junctionAt } from '../devices/exponential-diode.ts';
+import { criticalVoltage, evaluateJunction, type JunctionLaw, junctionAt } from '../devices/exponential-diode.ts';
 import { buildMonotoneCubic, evaluateMonotoneCubic } from '../devices/monotone-cubic.ts';
 import { buildPattern, slotOf } from '../linear/pattern.ts';
 import { segmentAt } from '../wave-evaluation.ts';
@@ -37,6 +37,7 @@ export function buildSystem(circuit: Circuit): System {
     drives: [],
     driven: [],
     laws: [],
+    junctionLeak: { siemens: 0 },
     modal: [],
   };
   for (const component of circuit.components) addComponent(stamp, component, circuit);
@@ -100,6 +101,7 @@ export function buildSystem(circuit: Circuit): System {
         slot(law.minus, law.second),
       ],
     })),
+    junctionLeak: stamp.junctionLeak,
     modal: stamp.modal.map((device) => ({
       ...device,
       slots: [
@@ -138,6 +140,7 @@ interface Stamp {
   readonly drives: Drive[];
   readonly driven: DrivenNode[];
   readonly laws: Omit<NonlinearLaw, 'slots'>[];
+  readonly junctionLeak: System['junctionLeak'];
   readonly modal: Omit<ModalDevice, 'slots' | 'drivenSlots'>[];
 }
 
@@ -258,9 +261,17 @@ function addComponent(stamp: Stamp, component: Component, circuit: Circuit): voi
       } else {
         const law = junctionAt(component.law, circuit.temperature);
         const limit = law.seriesResistance > 0 ? undefined : junctionLimit(criticalVoltage(law), law.slopeVoltage);
-        addLaw(stamp, designator, first, second, plus, minus, (v, result) => evaluateJunction(law, v, result), limit);
+        addLaw(stamp, designator, first, second, plus, minus, junctionEvaluator(law, stamp.junctionLeak), limit);
       }
   }
+}
+
+function junctionEvaluator(law: JunctionLaw, leak: System['junctionLeak']): NonlinearLaw['evaluate'] {
+  return (voltage, result) => {
+    evaluateJunction(law, voltage, result);
+    result[0]! += leak.siemens * voltage;
+    result[1]! += leak.siemens;
+  };
 }
 
 const START = segmentAt({ shape: 'constant', value: 0 }, 0);

@@ -22,6 +22,15 @@ export function evaluateCurrents(system: System, t: number, y: Float64Array, f: 
   }
 }
 
+/** df/dy at y, to `jacobian` (one element more than the pattern has entries). */
+export function evaluateConductances(system: System, y: Float64Array, jacobian: Float64Array): void {
+  jacobian.set(system.conductance);
+  for (const law of system.laws) {
+    law.evaluate(y[law.first]! - y[law.second]!, scratch);
+    addLawConductance(law.slots, scratch[1]!, jacobian);
+  }
+}
+
 export function addLawConductance(
   slots: readonly [number, number, number, number],
   conductance: number,

@@ -45,6 +45,8 @@ export interface System {
   /** Sources that fix a node's potential. */
   readonly driven: readonly DrivenNode[];
   readonly laws: readonly NonlinearLaw[];
+  /** Conductance across every exponential junction: zero, except where blocked junctions alone leave a node loose. */
+  readonly junctionLeak: { siemens: number };
   readonly modal: readonly ModalDevice[];
   /** Current mode of each modal device. */
   readonly modes: Int8Array;

@@ -13,6 +13,7 @@ import {
 } from '../linear/complex-factors.ts';
 import { analyseAndFactorise, factorise, type RealFactors, solveFactored } from '../linear/factors.ts';
 import { evaluateSegment } from '../wave-evaluation.ts';
+import { solveStagesFully } from './coupled-stages.ts';
 import { ALPHA, BETA, C1, C2, ERROR_WEIGHTS, GAMMA, T, T_INVERSE } from './radau-coefficients.ts';
 
 const MAXIMUM_ITERATIONS = 10;
@@ -123,6 +124,20 @@ export function solveStages(stepper: Stepper, t: number, h: number, y: Float64Ar
   const converged = iterate(stepper, h, y);
   stepper.previousStep = converged ? h : 0;
   return converged;
+}
+
+/**
+ * The same by Newton's method proper, for steps at which the simplified iteration fails; several times the work. Leaves the matrices that the error
+ * estimate needs.
+ */
+export function solveStagesRobustly(stepper: Stepper, t: number, h: number, y: Float64Array): boolean {
+  stepper.extrapolatedFrom = 0;
+  if (!solveStagesFully(stepper, t, h, y)) return false;
+  linearise(stepper, y);
+  if (!factoriseStages(stepper, h)) return false;
+  stepper.previousStep = h;
+  stepper.memory.convergence = 1;
+  return true;
 }
 
 /** Increments from the collocation polynomial of the step before, continued (section IV.8, equation 8.5). */
