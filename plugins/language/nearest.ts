@@ -1,20 +1,19 @@
 /** The valid name that an author probably meant. */
 
 /**
- * The nearest candidate, where it is close: no more than a third of the letters differ. Two neighbouring letters that
- * changed places count once (F. J. Damerau, 1964; the restricted form of the distance). Case counts for little.
+ * The nearest candidate, where it is close: no more than a third of the letters differ (of `R1` and `C1`, none may). Two
+ * neighbouring letters that changed places count once (F. J. Damerau, 1964; the restricted form of the distance). Case
+ * counts for little.
  */
 export function nearest(text: string, candidates: Iterable<string>): string | undefined {
   let best: string | undefined;
   let bestDistance = Number.POSITIVE_INFINITY;
   for (const candidate of candidates) {
-    const allowed = Math.max(1, Math.floor(Math.max(text.length, candidate.length) / 3));
+    const allowed = Math.floor(Math.max(text.length, candidate.length) / 3);
     if (Math.abs(text.length - candidate.length) > allowed) continue;
     const cased = distance(text.toLowerCase(), candidate.toLowerCase());
     const total = cased + (text === candidate ? 0 : 0.1);
-    // A one-letter name is near to every other: only its case may differ.
-    const close = Math.min(text.length, candidate.length) < 2 ? cased === 0 : cased <= allowed;
-    if (close && total < bestDistance) {
+    if (cased <= allowed && total < bestDistance) {
       best = candidate;
       bestDistance = total;
     }
