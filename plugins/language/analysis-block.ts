@@ -13,10 +13,10 @@ import { report } from './passage.ts';
 import type { Due } from './scalar.ts';
 import { entryOf, readYaml, reportRepeatedKeys, type YamlEntry, type YamlMapping, type YamlNode } from './yaml-tree.ts';
 
-type Find = Exclude<AnalysisRequest['find'], 'steady state' | 'frequency response'>;
+type Find = AnalysisRequest['find'];
 
-export const FINDS: readonly Find[] = ['operating point', 'characteristic', 'time response'];
-const FINDS_TO_COME: readonly string[] = ['steady state', 'frequency response'];
+export const FINDS: readonly Find[] = ['operating point', 'characteristic', 'time response', 'steady state'];
+const FINDS_TO_COME: readonly string[] = ['frequency response'];
 
 const LEAST_ACCURATE = 1e-2;
 const MOST_ACCURATE = 1e-10;
@@ -79,6 +79,13 @@ export const ANALYSIS_FIELDS: { readonly [find in Find]: readonly Field[] } = {
       key: 'start',
       doc: '`operating point` (default), `rest`, or the voltages of capacitors and currents of inductors',
       takes: { form: 'structure', words: '`operating point`, `rest`, or `{ C1: 5 V }`' },
+    },
+  ],
+  'steady state': [
+    {
+      key: 'period',
+      doc: 'the period of the response; default: the common period of the sources',
+      takes: { form: 'quantity', due: dues.TIME, range: 'positive' },
     },
   ],
 };
@@ -202,7 +209,6 @@ function readFind(tree: YamlMapping, start: Place): Find | undefined {
   report(tree.passage, entry.value.place, {
     message: toCome ? `this version does not find a \`${text}\` yet` : `\`${text}\` cannot be found`,
     expected: toCome ? `one of ${list(FINDS, 'or')}` : expectedName(text, FINDS),
-    ...(toCome && text === 'steady state' ? { example: 'find: time response, from: 180 ms, until: 200 ms' } : {}),
   });
   return undefined;
 }
@@ -244,6 +250,10 @@ function readTemperatures(values: FieldValues): number[] | undefined {
 function readRequest(find: Find, values: FieldValues, circuit: Circuit | undefined): AnalysisRequest | undefined {
   if (find === 'operating point') return { find };
   if (find === 'characteristic') return readCharacteristic(values, circuit);
+  if (find === 'steady state') {
+    const period = values.quantities.get('period')?.value;
+    return { find, ...(period === undefined ? {} : { period }) };
+  }
   const until = values.quantities.get('until')?.value;
   const from = values.quantities.get('from')?.value;
   const startEntry = values.entries.get('start');

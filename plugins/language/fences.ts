@@ -134,6 +134,13 @@ function readFence(file: FileText, problems: Problem[], token: Token, bodyStart:
       expected: 'one name after the kind of block',
       example: `${token.markup}${kind} ${names.join('-')}`,
     });
+  } else if (kind === 'analysis' && NAME.test(name) && name.includes('-')) {
+    // Expressions read from an analysis by its name, and there a hyphen is a minus.
+    problem(namePlace, {
+      message: `\`${name}\` cannot be an analysis's name: in \`x @ ${name}\` the hyphen is a minus`,
+      expected: 'letters, digits and `_`',
+      example: `${token.markup}analysis ${name.replaceAll('-', '_')}`,
+    });
   } else if (!NAME.test(name)) {
     problem(namePlace, {
       message: `\`${name}\` cannot be a block's name`,
