@@ -1,26 +1,22 @@
 /** The body of an `analysis` block: what to find of which circuit. */
-import { type AnalysisRequest, DEFAULT_ACCURACY, type StartingState } from '../../solver/analysis.ts';
-import type { Circuit, Component } from '../../solver/circuit.ts';
+import { DEFAULT_ACCURACY } from '../../solver/analysis.ts';
 import type { Words } from '../problems.ts';
-import { type CircuitReading, componentOf } from './circuit-block.ts';
-import { LINEAR_VALUES } from './components/linear.ts';
+import { type Find, readRequest } from './analysis-request.ts';
+import type { CircuitReading } from './circuit-block.ts';
 import * as dues from './dues.ts';
 import type { Fence } from './fences.ts';
 import { type Field, type FieldValues, readFields, readList, readScalar } from './fields.ts';
-import type { AnalysisBlock, Place, Variation } from './model.ts';
+import type { AnalysisBlock, Place } from './model.ts';
 import { expectedName, list } from './nearest.ts';
 import { report } from './passage.ts';
-import type { Due } from './scalar.ts';
-import { entryOf, readYaml, reportRepeatedKeys, type YamlEntry, type YamlMapping, type YamlNode } from './yaml-tree.ts';
-
-type Find = AnalysisRequest['find'];
+import { readVary } from './variations.ts';
+import { entryOf, readYaml, reportRepeatedKeys, type YamlMapping } from './yaml-tree.ts';
 
 export const FINDS: readonly Find[] = ['operating point', 'characteristic', 'time response', 'steady state'];
 const FINDS_TO_COME: readonly string[] = ['frequency response'];
 
 const LEAST_ACCURATE = 1e-2;
 const MOST_ACCURATE = 1e-10;
-const MOST_POINTS = 100_000;
 const MOST_RUNS = 1000;
 
 const COMMON_FIELDS: readonly Field[] = [
@@ -245,154 +241,4 @@ function readTemperatures(values: FieldValues): number[] | undefined {
   const entry = values.entries.get('temperature');
   if (!entry) return [];
   return readList(entry.value, (node) => readScalar(node, dues.TEMPERATURE, 'positive', 'temperature')?.value);
-}
-
-function readRequest(find: Find, values: FieldValues, circuit: Circuit | undefined): AnalysisRequest | undefined {
-  if (find === 'operating point') return { find };
-  if (find === 'characteristic') return readCharacteristic(values, circuit);
-  if (find === 'steady state') {
-    const period = values.quantities.get('period')?.value;
-    return { find, ...(period === undefined ? {} : { period }) };
-  }
-  const until = values.quantities.get('until')?.value;
-  const from = values.quantities.get('from')?.value;
-  const startEntry = values.entries.get('start');
-  const start = startEntry ? readStart(startEntry, circuit) : 'operating point';
-  if (until === undefined || from === undefined || !start) return undefined;
-  if (from >= until) {
-    const node = values.entries.get('from')!.value;
-    report(node.passage, node.place, { message: '`from` is not before `until`', expected: 'an earlier time' });
-    return undefined;
-  }
-  return { find, until, from, start };
-}
-
-function readCharacteristic(values: FieldValues, circuit: Circuit | undefined): AnalysisRequest | undefined {
-  const pointsScalar = values.quantities.get('points');
-  let points = pointsScalar?.value;
-  if (points !== undefined && (!Number.isInteger(points) || points < 2 || points > MOST_POINTS)) {
-    const node = values.entries.get('points')!.value;
-    report(node.passage, node.place, {
-      message: `\`${pointsScalar!.text}\` is not a number of points`,
-      expected: `a whole number from 2 to ${MOST_POINTS}`,
-    });
-    points = undefined;
-  }
-  const sweep = values.entries.get('sweep')?.value;
-  if (!sweep) return undefined;
-  const only = sweep.type === 'mapping' && sweep.entries.length === 1 ? sweep.entries[0]! : undefined;
-  if (only?.value.type !== 'sequence' || only.value.items.length !== 2) {
-    report(sweep.passage, only?.value.place ?? sweep.place, {
-      message: '`sweep` does not state one source and the two ends of its range',
-      expected: 'a designator and two values',
-      example: 'sweep: { G1: [-5 V, 5 V] }',
-    });
-    return undefined;
-  }
-  if (!circuit) return undefined;
-  const sources = circuit.components.filter(({ kind }) => kind === 'source' || kind === 'current-source');
-  const source = sources.find((component) => component.designator === only.key);
-  if (!source) {
-    reportNoSuch(only, circuit, sources, 'a source');
-    return undefined;
-  }
-  const due = source.kind === 'source' ? dues.VOLTAGE : dues.CURRENT;
-  const [from, to] = only.value.items.map((item) => readScalar(item, due, undefined, only.key)?.value);
-  if (from === undefined || to === undefined || points === undefined) return undefined;
-  if (from === to) {
-    report(sweep.passage, only.value.place, {
-      message: 'the range of the sweep is empty',
-      expected: 'two different values',
-    });
-    return undefined;
-  }
-  return { find: 'characteristic', sweep: source.designator, from, to, points };
-}
-
-function readStart(entry: YamlEntry, circuit: Circuit | undefined): StartingState | undefined {
-  const { value } = entry;
-  if (value.type === 'scalar') {
-    const text = value.text.trim();
-    if (text === 'rest' || text === 'operating point') return text;
-  }
-  if (value.type !== 'mapping') {
-    report(value.passage, value.place, {
-      message: value.type === 'scalar' ? `\`${value.text.trim()}\` is not a start` : '`start` is a list',
-      expected: '`operating point`, `rest`, or the voltages of capacitors and currents of inductors',
-      example: 'start: { C1: 5 V }',
-    });
-    return undefined;
-  }
-  if (!circuit) return undefined;
-  const storing = circuit.components.filter(({ kind }) => kind === 'capacitor' || kind === 'inductor');
-  const state: [string, number][] = [];
-  let ok = true;
-  for (const item of value.entries) {
-    const component = storing.find((candidate) => candidate.designator === item.key);
-    if (!component) reportNoSuch(item, circuit, storing, 'a capacitor or an inductor');
-    const due = component?.kind === 'inductor' ? dues.CURRENT : dues.VOLTAGE;
-    const scalar = component && readScalar(item.value, due, undefined, item.key);
-    if (scalar) state.push([item.key, scalar.value]);
-    else ok = false;
-  }
-  return ok ? Object.fromEntries(state) : undefined;
-}
-
-function readVary(values: FieldValues, circuit: Circuit): Variation[] | undefined {
-  const entry = values.entries.get('vary');
-  if (!entry) return [];
-  if (entry.value.type !== 'mapping') {
-    report(entry.value.passage, entry.value.place, {
-      message: '`vary` is not a mapping',
-      expected: 'designators and lists of values',
-      example: 'vary: { C1: [470 nF, 1 µF, 2.2 µF] }',
-    });
-    return undefined;
-  }
-  const variable = circuit.components.filter((component) => dueOf(component) !== undefined);
-  const read = entry.value.entries.map((item) => {
-    const component = variable.find((candidate) => candidate.designator === item.key);
-    if (component) return readVariation(item, dueOf(component)!);
-    reportNoSuch(item, circuit, variable, 'a component with one value');
-    return undefined;
-  });
-  return read.includes(undefined) ? undefined : (read as Variation[]);
-}
-
-/** The quantity of a component's single value. */
-function dueOf(component: Component): Due | undefined {
-  if (component.kind === 'resistor' || component.kind === 'capacitor' || component.kind === 'inductor') {
-    return { ...LINEAR_VALUES[component.kind], tolerance: false };
-  }
-  if (component.kind === 'source' && component.wave.shape === 'constant') return dues.VOLTAGE;
-  if (component.kind === 'current-source' && component.wave.shape === 'constant') return dues.CURRENT;
-  return undefined;
-}
-
-function readVariation(item: YamlEntry, due: Due): Variation | undefined {
-  const positive = due.coded === undefined ? undefined : 'positive';
-  const readOne = (node: YamlNode) => {
-    const scalar = readScalar(node, due, positive, item.key);
-    return scalar && { value: scalar.value, text: scalar.text };
-  };
-  const values = readList(item.value, readOne);
-  if (!values) return undefined;
-  if (values.length > 0) return { designator: item.key, values };
-  report(item.value.passage, item.value.place, {
-    message: `no value of \`${item.key}\` is listed`,
-    expected: 'one value at least',
-  });
-  return undefined;
-}
-
-/** A name that is no component, or one of the wrong kind. */
-function reportNoSuch(entry: YamlEntry, circuit: Circuit, fitting: readonly Component[], what: string): void {
-  const names = fitting.map((component) => component.designator);
-  const other = componentOf(circuit, entry.key);
-  report(entry.keyNode.passage, entry.keyNode.place, {
-    message: other
-      ? `\`${entry.key}\` is a ${other.kind}, and ${what} is due here`
-      : `the circuit \`${circuit.name}\` has no component \`${entry.key}\``,
-    expected: names.length === 0 ? `${what}, and the circuit has none` : expectedName(entry.key, names),
-  });
 }

@@ -1,5 +1,5 @@
 /** The body of a `circuit` block: which components stand between which nodes. */
-import { type Circuit, type Component, REFERENCE_NODE, REFERENCE_TEMPERATURE } from '../../solver/circuit.ts';
+import { type Circuit, REFERENCE_NODE, REFERENCE_TEMPERATURE } from '../../solver/circuit.ts';
 import type { Words } from '../problems.ts';
 import type { ComponentOutput, Surroundings } from './components/context.ts';
 import * as dues from './dues.ts';
@@ -209,9 +209,4 @@ function findKind(item: YamlEntry, mapping: YamlMapping): { kind: Kind; entry: Y
     expected: wrong ? expectedName(wrong.key, names) : `one of ${list(names, 'or')}`,
     example: 'R1: { resistor: 47 Ω, nodes: [a, gnd] }',
   });
-}
-
-/** The component of a designator. */
-export function componentOf(circuit: Circuit, designator: string): Component | undefined {
-  return circuit.components.find((component) => component.designator === designator);
 }
