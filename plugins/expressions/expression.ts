@@ -80,7 +80,13 @@ export type ResolvedNode = { readonly span: Span } & (
   /** A datum of a component: `value`, `rating.forward_current`. */
   | { readonly type: 'constant'; readonly circuit: string; readonly designator: string; readonly path: string }
   | { readonly type: 'figure'; readonly name: string; readonly note?: string }
-  | { readonly type: 'call'; readonly function: string; readonly arguments: readonly ResolvedNode[] }
+  | {
+      readonly type: 'call';
+      readonly function: string;
+      readonly arguments: readonly ResolvedNode[];
+      /** Dimension of the first argument's axis. */
+      readonly axis: Dimension;
+    }
   | { readonly type: 'unary'; readonly operator: '-' | 'not'; readonly operand: ResolvedNode }
   | {
       readonly type: 'binary';
