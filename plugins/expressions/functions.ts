@@ -104,7 +104,7 @@ const logarithm = (name: string, doc: string, of: (x: number) => number): Functi
   ofEither(
     name,
     doc,
-    `${name}(C1.value / C2.value)`,
+    `${name}(R1.value / 1 kΩ)`,
     (x) => (x > 0 ? of(x) : { none: 'the logarithm of a number that is not above zero' }),
     (x) => map(x, (value) => (value > 0 ? of(value) : Number.NaN)),
     plain,
