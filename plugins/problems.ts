@@ -56,11 +56,16 @@ export function problemAt(
     column,
     length,
     sourceLine,
-    message: words.message,
-    ...(words.expected === undefined ? {} : { expected: words.expected }),
+    message: shorten(words.message),
+    ...(words.expected === undefined ? {} : { expected: shorten(words.expected) }),
     ...(words.example === undefined ? {} : { example: words.example }),
     severity: words.severity ?? 'error',
   };
+}
+
+/** Cuts what is quoted from the author where it is long; the source line shows it whole. */
+function shorten(text: string): string {
+  return text.replace(/`([^`]{101,})`/g, (_, quoted: string) => `\`${quoted.slice(0, 80)}…\``);
 }
 
 /**

@@ -48,6 +48,9 @@ export type ScalarReading =
   | { readonly ok: true; readonly scalar: Scalar }
   | { readonly ok: false; readonly fault: ScalarFault };
 
+/** No scalar is longer, in characters; patterns with several numbers would take long over more. */
+const LONGEST_TEXT = 200;
+
 const NUMBER = /[-+−]?(?:\d+(?:\.\d*)?|\.\d+)(?:[eE][-+−]?\d+)?/y;
 
 /** Reads the whole text as a scalar of what is due. */
@@ -60,6 +63,8 @@ export function parseScalar(text: string, due: Due): ScalarReading {
   });
   const written = text.slice(start, end);
   if (written === '') return fail(`nothing is written where ${dueInWords(due)} is due`, expectation(due));
+
+  if (written.length > LONGEST_TEXT) return fail('this text is too long for one value', expectation(due));
 
   const toleranceStart = findTolerance(text, start, end);
   const valueEnd = text.slice(0, toleranceStart).trimEnd().length;

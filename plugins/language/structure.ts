@@ -133,13 +133,14 @@ function checkLoops(circuit: Circuit, reading: CircuitReading, needsOperatingPoi
       )
     : [];
   const tree: Component[] = [];
+  const { join } = joiner();
   for (const component of [...stiff, ...inductors]) {
-    const path = pathBetween(component.nodes[0], component.nodes[1], tree);
-    if (!path) {
+    const [first, second] = component.nodes;
+    if (join(first, second)) {
       tree.push(component);
       continue;
     }
-    const loop = [...path, component];
+    const loop = [...pathBetween(first, second, tree), component];
     const inOrder = circuit.components.filter((other) => loop.includes(other)).map((other) => other.designator);
     const withInductor = loop.some((other) => other.kind === 'inductor');
     fault(reading.designators.get(inOrder.at(-1)!)!, {
@@ -191,32 +192,51 @@ function checkCutSets(circuit: Circuit, reading: CircuitReading, nodeNames: read
 
 /** For each node the name of its group: nodes joined by the given components are of one group. */
 function grouped(nodeNames: readonly string[], components: readonly Component[]): Map<string, string> {
-  const parent = new Map(nodeNames.map((node) => [node, node]));
-  const rootOf = (node: string): string => {
-    let root = node;
-    while (parent.get(root) !== root) root = parent.get(root)!;
-    parent.set(node, root);
-    return root;
-  };
-  for (const { nodes } of components) parent.set(rootOf(nodes[0]), rootOf(nodes[1]));
+  const { join, rootOf } = joiner();
+  for (const { nodes } of components) join(nodes[0], nodes[1]);
   return new Map(nodeNames.map((node) => [node, rootOf(node)]));
 }
 
-/** The components of a tree that lead from one node to another; nothing if they do not meet. */
-function pathBetween(from: string, to: string, tree: readonly Component[]): readonly Component[] | undefined {
+/** Disjoint sets of nodes. `join` says whether its two nodes were apart before. */
+function joiner(): { join: (first: string, second: string) => boolean; rootOf: (node: string) => string } {
+  const parent = new Map<string, string>();
+  const rootOf = (node: string): string => {
+    let root = node;
+    for (let above = parent.get(root); above !== undefined && above !== root; above = parent.get(root)) root = above;
+    // The way is shortened for the next that goes it.
+    for (let at = node; at !== root; ) {
+      const above = parent.get(at)!;
+      parent.set(at, root);
+      at = above;
+    }
+    return root;
+  };
+  const join = (first: string, second: string): boolean => {
+    const [one, other] = [rootOf(first), rootOf(second)];
+    if (one === other) return false;
+    parent.set(one, other);
+    return true;
+  };
+  return { join, rootOf };
+}
+
+/** The components of a tree that lead from one of its nodes to another. */
+function pathBetween(from: string, to: string, tree: readonly Component[]): readonly Component[] {
+  const beside = new Map<string, Component[]>();
+  for (const component of tree) {
+    for (const node of component.nodes) beside.set(node, [...(beside.get(node) ?? []), component]);
+  }
   const cameBy = new Map<string, { component: Component; previous: string } | undefined>([[from, undefined]]);
   const queue = [from];
   for (const node of queue) {
     if (node === to) break;
-    for (const component of tree) {
-      const [first, second] = component.nodes;
-      const next = first === node ? second : second === node ? first : undefined;
-      if (next === undefined || cameBy.has(next)) continue;
+    for (const component of beside.get(node) ?? []) {
+      const next = component.nodes[0] === node ? component.nodes[1] : component.nodes[0];
+      if (cameBy.has(next)) continue;
       cameBy.set(next, { component, previous: node });
       queue.push(next);
     }
   }
-  if (!cameBy.has(to)) return undefined;
   const path: Component[] = [];
   for (let step = cameBy.get(to); step; step = cameBy.get(step.previous)) path.push(step.component);
   return path;

@@ -37,6 +37,8 @@ export const VALUE_TOKEN = 'computed_value';
 
 const OPENING = ':val[';
 const LARGEST_DIGITS = 15;
+/** In characters: text with many open brackets is read once, not once from each. */
+const LONGEST_EXPRESSION = 2000;
 
 /**
  * Reads the directive that begins at `start`; nothing if none does. Square brackets within the expression nest. A
@@ -92,7 +94,8 @@ export function metaOf(token: Token): ValueTokenMeta {
 
 function closingBracket(text: string, from: number): number {
   let depth = 1;
-  for (let at = from; at < text.length; at++) {
+  const limit = Math.min(text.length, from + LONGEST_EXPRESSION);
+  for (let at = from; at < limit; at++) {
     if (text[at] === '[') depth++;
     else if (text[at] === ']' && --depth === 0) return at;
   }
