@@ -1,4 +1,4 @@
-/** Physical dimension as exponents of the SI base units that occur here, and an optional tag for angles. */
+/** Physical dimension as exponents of the SI base units that occur here. Angles are plain numbers, in radian. */
 export interface Dimension {
   readonly metre: number;
   readonly kilogram: number;
