@@ -4,6 +4,7 @@
  */
 import { toSI } from '../language/units.ts';
 import type { BinaryOperator, ExpressionNode, Fault, Span } from './expression.ts';
+import { inWords, leftOver } from './parse-faults.ts';
 import { clip, readTokens, type Token } from './tokens.ts';
 
 /** Longest text, most operands and deepest brackets that are read: far beyond what a reader could follow. */
@@ -52,7 +53,9 @@ export function parseExpression(text: string): { root?: ExpressionNode; faults: 
   const end: Token = { type: 'end', span: fault?.span ?? { start: text.length, end: text.length + 1 } };
   const parser: Parser = { text, tokens: fault ? [...tokens, end] : tokens, at: 0, operands: 0, depth: 0, cut: fault };
   const root = readOperators(parser, 0);
-  const first = parser.fault ?? (parser.tokens[parser.at]!.type === 'end' ? fault : leftOver(parser));
+  const first =
+    parser.fault ??
+    (parser.tokens[parser.at]!.type === 'end' ? fault : leftOver(parser.text, parser.tokens, parser.at));
   if (first) return { faults: [fault && first.span.start >= fault.span.start ? fault : first] };
   return { root: root!, faults: [] };
 }
@@ -149,7 +152,7 @@ function readFrom(parser: Parser): ExpressionNode | undefined {
     if (name.type !== 'name') {
       return fail(parser, {
         span: name.span,
-        message: `${inWords(parser, name)} where the name of an analysis is due`,
+        message: `${inWords(parser.text, name)} where the name of an analysis is due`,
         expected: 'the name of an analysis block after `@`',
         example: 'mean(D1.i) @ steady',
       });
@@ -193,7 +196,7 @@ function readPrimary(parser: Parser): ExpressionNode | undefined {
   }
   return fail(parser, {
     span: token.span,
-    message: `${inWords(parser, token)} where a quantity is due`,
+    message: `${inWords(parser.text, token)} where a quantity is due`,
     expected: 'a name, a number with its unit, a call or a bracket',
     example: 'mean(D1.i) / 2',
   });
@@ -212,7 +215,7 @@ function readAfterName(parser: Parser, name: string, span: Span): ExpressionNode
     if (step.type !== 'name') {
       return fail(parser, {
         span: step.span,
-        message: `${inWords(parser, step)} after \`${clip(parser.text.slice(span.start, dot.span.end))}\``,
+        message: `${inWords(parser.text, step)} after \`${clip(parser.text.slice(span.start, dot.span.end))}\``,
         expected: 'the name of a property',
         example: `${name}.v`,
       });
@@ -271,47 +274,7 @@ function closeBracket(
   if (token.type === 'end') {
     return fail(parser, parser.cut ?? { span: opening, message: 'this bracket is not closed', expected: 'a `)`' });
   }
-  return fail(parser, leftOver(parser));
-}
-
-/** What is wrong with a token that continues nothing. */
-function leftOver(parser: Parser): Fault {
-  const token = parser.tokens[parser.at]!;
-  const before = parser.tokens[parser.at - 1];
-  const { span } = token;
-  if (token.type === 'sign' && token.sign === ')') {
-    return { span, message: 'a `)` closes no bracket', expected: 'as many `(` as `)`' };
-  }
-  if (token.type === 'sign' && token.sign === ',') {
-    const after = parser.tokens[parser.at + 1];
-    if (before?.type === 'number' && after?.type === 'number' && after.span.start === span.end) {
-      const written = parser.text.slice(before.span.start, after.span.end);
-      return {
-        span: { start: before.span.start, end: after.span.end },
-        message: `\`${clip(written)}\` has a comma`,
-        expected: 'a decimal point',
-        example: clip(written.replace(',', '.')),
-      };
-    }
-    return { span, message: 'a comma stands outside a call', expected: 'one expression' };
-  }
-  if (token.type === 'sign' && token.sign === '.') {
-    return { span, message: 'a point stands behind something that has no properties', expected: 'the form `D1.i`' };
-  }
-  if (before?.type === 'number' && token.type === 'name' && before.unit === undefined) {
-    return {
-      span,
-      message: `\`${clip(token.name)}\` follows a number, and is no unit`,
-      expected: 'a unit, or an operator between the two',
-      example: `2 * ${clip(token.name)}`,
-    };
-  }
-  return {
-    span,
-    message: `${inWords(parser, token)} where an operator or the end is due`,
-    expected: 'an operator such as `*` between two quantities',
-    example: 'D1.v * D1.i',
-  };
+  return fail(parser, leftOver(parser.text, parser.tokens, parser.at));
 }
 
 /** `a < b < c`: the fault shows how it is written with `and`. */
@@ -354,9 +317,4 @@ function nested(parser: Parser, span: Span, read: () => ExpressionNode | undefin
 
 function cover(first: Span, last: Span): Span {
   return { start: first.start, end: last.end };
-}
-
-function inWords(parser: Parser, token: Token): string {
-  if (token.type === 'end') return 'the expression ends';
-  return `\`${clip(parser.text.slice(token.span.start, token.span.end))}\` stands`;
 }

@@ -1,6 +1,8 @@
+import fc from 'fast-check';
 import { describe, expect, test } from 'vitest';
 import { checkExpression } from '../../../plugins/expressions/check.ts';
 import { type Evaluation, evaluateExpression, type Scope } from '../../../plugins/expressions/evaluate.ts';
+import { FUNCTIONS } from '../../../plugins/expressions/functions.ts';
 import { parseExpression } from '../../../plugins/expressions/parse.ts';
 import type { IntervalSet } from '../../../solver/waveform/interval-set.ts';
 import { valueAt } from '../../../solver/waveform/value-at.ts';
@@ -128,4 +130,43 @@ describe('no value', () => {
     expect(!outcome.ok && outcome.reason).toContain('a divisor passes through zero');
     expect(value('at(C1.v / D1.i, 5 ms)')).toBeCloseTo(500, 9);
   });
+});
+
+test('whatever passes the checker is evaluated without an exception, and its numbers are finite', () => {
+  const { text } = fc.letrec<{ text: string }>((tie) => ({
+    text: fc.oneof(
+      { depthSize: 'small' },
+      fc.constantFrom('D1.i', 'lamp', 'D1.v', 'C1.value', 'lamp_mean', '2', '0', '-1', '5 ms', '1 mA', '2 V', 'time'),
+      fc
+        .tuple(
+          fc.constantFrom(...FUNCTIONS.map(({ name }) => name)),
+          fc.array(tie('text'), { minLength: 1, maxLength: 2 }),
+        )
+        .map(([name, operands]) => `${name}(${operands.join(', ')})`),
+      fc
+        .tuple(tie('text'), fc.constantFrom('+', '-', '*', '/', '^', '<', '>=', '==', '!=', 'and', 'or'), tie('text'))
+        .map(([left, operator, right]) => `(${left} ${operator} ${right})`),
+      tie('text').map((operand) => `(not ${operand})`),
+      fc
+        .tuple(tie('text'), fc.constantFrom('curve', 'bias'))
+        .map(([operand, analysis]) => `(${operand}) @ ${analysis}`),
+    ),
+  }));
+  const kinds = new Set<string>();
+  fc.assert(
+    fc.property(text, (written) => {
+      const { root } = parseExpression(written);
+      const { checked } = root ? checkExpression(written, root, context) : {};
+      if (!checked) return;
+      const outcome = evaluateExpression(checked, scope);
+      kinds.add(checked.kind);
+      if (!outcome.ok) expect(outcome.reason).not.toBe('');
+      else if (checked.kind === 'number') expect(outcome.value).toSatisfy(Number.isFinite);
+      else if (checked.kind === 'waveform') expect(outcome.value).toHaveProperty('values');
+      else if (checked.kind === 'condition') expect(outcome.value).toHaveProperty('starts');
+      else expect(outcome.value).toBeTypeOf('boolean');
+    }),
+    { numRuns: 5000 },
+  );
+  expect([...kinds].sort()).toEqual(['condition', 'number', 'truth', 'waveform']);
 });
