@@ -65,6 +65,8 @@ export function solveNewton(system: System, problem: StaticProblem, y: Float64Ar
   const start = y.slice();
   const change = new Float64Array(system.vectorLength);
   const update = new Float64Array(size + 1);
+  const base = new Float64Array(size + 1);
+  applyConductance(system, start, base);
   setDriven(system, problem.t, y, problem.driveScale);
   for (const { index } of system.driven) change[index] = y[index]! - start[index]!;
   const point = Float64Array.from(laws, (law) => y[law.first]! - y[law.second]!);
@@ -79,9 +81,9 @@ export function solveNewton(system: System, problem: StaticProblem, y: Float64Ar
   if (diagonal !== 0) for (let i = 0; i < nodes; i++) linear[diagonalSlot(system, i)]! += diagonal;
 
   const residual = (at: Float64Array, withJacobian: boolean): void => {
-    applyConductance(system, at, right);
+    applyConductance(system, change, right);
     if (withJacobian) jacobian.set(linear);
-    for (let i = 0; i < size; i++) right[i]! += drives[i]!;
+    for (let i = 0; i < size; i++) right[i]! += base[i]! + drives[i]!;
     if (problem.shunt !== 0) for (let i = 0; i < nodes; i++) right[i]! += problem.shunt * at[i]!;
     if (problem.rate !== 0) {
       applyStorage(system, change, charge);

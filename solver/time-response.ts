@@ -225,7 +225,6 @@ function stepTo(march: March, end: number): void {
   march.h = Math.min(march.h, longest);
   const { effort } = stepper;
   let failures = 0;
-  let newtonFailures = 0;
   let rejected = false;
   while (march.t < end) {
     if (effort.steps + effort.rejectedSteps > MAXIMUM_STEPS) {
@@ -239,10 +238,9 @@ function stepTo(march: March, end: number): void {
       last = true;
     } else if (2 * h > left) h = left / 2;
     setWeights(march);
-    // twice refused by the simplified iteration, a step is worth a full one
-    const solved =
-      newtonFailures < 2 ? solveStages(stepper, march.t, h, y) : solveStagesRobustly(stepper, march.t, h, y);
-    newtonFailures = solved ? 0 : newtonFailures + 1;
+    // refused by the simplified iteration, a step of some length is worth a full one
+    let solved = solveStages(stepper, march.t, h, y);
+    if (!solved) solved = solveStagesRobustly(stepper, march.t, h, y);
     if (!solved) {
       effort.rejectedSteps++;
       failures++;
@@ -253,7 +251,6 @@ function stepTo(march: March, end: number): void {
         if (tieDown(march)) {
           march.h = 1e-3 * (end - march.t);
           failures = 0;
-          newtonFailures = 0;
           continue;
         }
         throw unsettled(
@@ -311,7 +308,9 @@ function stepTo(march: March, end: number): void {
       // predictive controller (K. Gustafsson, 1994)
       factor = Math.min(factor, (0.9 * h * (march.lastError / (error * error)) ** 0.25) / march.lastStep);
     }
-    factor = Math.max(0.125, Math.min(rejected ? 1 : 8, factor));
+    // what barely converged at this length will not at a greater one
+    const bold = stepper.contraction > 0.3 ? 1 : stepper.contraction > 0.1 ? 1.5 : 8;
+    factor = Math.max(0.125, Math.min(rejected ? 1 : bold, factor));
     march.lastError = Math.max(1e-2, error);
     march.lastStep = h;
     march.chatter = 0;

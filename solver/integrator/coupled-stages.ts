@@ -100,7 +100,7 @@ const MAXIMUM_ITERATIONS = 60;
  */
 export function solveStagesFully(stepper: Stepper, t: number, h: number, y: Float64Array): boolean {
   const { system, z, weight, effort } = stepper;
-  const { size, laws, vectorLength } = system;
+  const { size, laws } = system;
   let stages = coupled.get(system);
   if (!stages) {
     stages = createStepSystem(system);
@@ -113,7 +113,8 @@ export function solveStagesFully(stepper: Stepper, t: number, h: number, y: Floa
       z[a]![index] = sign * evaluateSegment(segment, t + node * h) - y[index]!;
     });
   }
-  const at = new Float64Array(vectorLength);
+  const base = new Float64Array(size + 1);
+  applyConductance(system, y, base);
   const values = new Float64Array(stages.pattern.column.length);
   const right = new Float64Array(3 * size);
   const jacobians = nodes.map(() => new Float64Array(system.pattern.column.length + 1));
@@ -133,14 +134,15 @@ export function solveStagesFully(stepper: Stepper, t: number, h: number, y: Floa
       applyStorage(system, increment, charges[a]!);
     });
     for (let a = 0; a < 3; a++) {
-      for (let i = 0; i < vectorLength; i++) at[i] = y[i]! + z[a]![i]!;
-      applyConductance(system, at, currents);
+      const increment = z[a]!;
+      applyConductance(system, increment, currents);
       const jacobian = jacobians[a]!;
       jacobian.set(system.conductance);
       laws.forEach((law, k) => {
         const point = points[a]![k]!;
         law.evaluate(point, result);
-        const current = result[0]! + result[1]! * (at[law.first]! - at[law.second]! - point);
+        const v = y[law.first]! - y[law.second]! + (increment[law.first]! - increment[law.second]!);
+        const current = result[0]! + result[1]! * (v - point);
         currents[law.plus]! += current;
         currents[law.minus]! -= current;
         addLawConductance(law.slots, result[1]!, jacobian);
@@ -148,7 +150,7 @@ export function solveStagesFully(stepper: Stepper, t: number, h: number, y: Floa
       const [w0, w1, w2] = A_INVERSE[a]!;
       for (let i = 0; i < size; i++) {
         const stored = (w0! * charges[0]![i]! + w1! * charges[1]![i]! + w2! * charges[2]![i]!) / h;
-        right[a * size + i] = -(currents[i]! + drives[a]![i]! + stored);
+        right[a * size + i] = -(base[i]! + currents[i]! + drives[a]![i]! + stored);
       }
     }
     assembleStages(system, stages, h, jacobians, values);
@@ -170,7 +172,7 @@ export function solveStagesFully(stepper: Stepper, t: number, h: number, y: Floa
     let limited = false;
     for (let a = 0; a < 3; a++) {
       laws.forEach((law, k) => {
-        const asked = y[law.first]! + z[a]![law.first]! - y[law.second]! - z[a]![law.second]!;
+        const asked = y[law.first]! - y[law.second]! + (z[a]![law.first]! - z[a]![law.second]!);
         const taken = law.limit ? law.limit(points[a]![k]!, asked) : asked;
         if (Math.abs(taken - asked) > 1e-9 * Math.abs(asked)) limited = true;
         points[a]![k] = taken;

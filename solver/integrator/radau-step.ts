@@ -18,9 +18,6 @@ import { ALPHA, BETA, C1, C2, ERROR_WEIGHTS, GAMMA, T, T_INVERSE } from './radau
 
 const MAXIMUM_ITERATIONS = 10;
 
-/** The rate of convergence assumed of a first iteration is at least this. */
-const LEAST_EXPERIENCE = 0.1;
-
 export interface Stepper {
   readonly system: System;
   readonly effort: Effort;
@@ -50,17 +47,19 @@ interface StepMemory {
   readonly w: readonly [Float64Array, Float64Array, Float64Array];
   readonly f: readonly [Float64Array, Float64Array, Float64Array];
   readonly drive: readonly [Float64Array, Float64Array, Float64Array];
+  /** G y at the step's start. */
+  readonly base: Float64Array;
   readonly y: Float64Array;
   readonly right: readonly [Float64Array, Float64Array, Float64Array];
   readonly stored: readonly [Float64Array, Float64Array, Float64Array];
   readonly jacobian: Float64Array;
+  readonly stageConductance: Float64Array;
   readonly real: Float64Array;
   readonly complexReal: Float64Array;
   readonly complexImaginary: Float64Array;
   readonly law: Float64Array;
   factors?: RealFactors;
   complex?: ComplexFactors;
-  convergence: number;
 }
 
 type Three = [Float64Array, Float64Array, Float64Array];
@@ -86,23 +85,23 @@ export function createStepper(system: System, effort: Effort): Stepper {
       w: three(),
       f: three(),
       drive: three(),
+      base: new Float64Array(n),
       y: new Float64Array(n),
       right: three(),
       stored: three(),
       jacobian: new Float64Array(entries),
+      stageConductance: new Float64Array(entries),
       real: new Float64Array(entries),
       complexReal: new Float64Array(entries),
       complexImaginary: new Float64Array(entries),
       law: new Float64Array(2),
-      convergence: 1,
     },
   };
 }
 
-/** Forgets the last step: the next one starts from a constant, and its Newton iteration from no experience. */
+/** Forgets the last step: the next one starts from a constant. */
 export function forgetHistory(stepper: Stepper): void {
   stepper.previousStep = 0;
-  stepper.memory.convergence = 1;
 }
 
 /** Solves the collocation equations of a step from (t, y) over h; false where Newton's method does not converge. */
@@ -119,6 +118,7 @@ export function solveStages(stepper: Stepper, t: number, h: number, y: Float64Ar
     z[1][index] = sign * evaluateSegment(segment, t + C2 * h) - y[index]!;
     z[2][index] = sign * evaluateSegment(segment, t + h) - y[index]!;
   }
+  applyConductance(system, y, memory.base);
   linearise(stepper, y);
   if (!factoriseStages(stepper, h)) return false;
   const converged = iterate(stepper, h, y);
@@ -136,7 +136,6 @@ export function solveStagesRobustly(stepper: Stepper, t: number, h: number, y: F
   linearise(stepper, y);
   if (!factoriseStages(stepper, h)) return false;
   stepper.previousStep = h;
-  stepper.memory.convergence = 1;
   return true;
 }
 
@@ -179,9 +178,29 @@ function linearise(stepper: Stepper, y: Float64Array): void {
   jacobian.set(system.conductance);
   for (const law of system.laws) {
     const { first, second } = law;
-    law.evaluate(y[first]! + middle[first]! - y[second]! - middle[second]!, result);
+    law.evaluate(y[first]! - y[second]! + (middle[first]! - middle[second]!), result);
     addLawConductance(law.slots, result[1]!, jacobian);
   }
+}
+
+/**
+ * How many times smaller than the true correction an update may be, because the iteration uses conductances far above those of the stages it
+ * has come to: on the steep part of a junction's law every update then looks small, however far the solution is.
+ */
+function shortfall(stepper: Stepper): number {
+  const { system, memory } = stepper;
+  const { real, jacobian, stageConductance } = memory;
+  let worst = 1;
+  for (let k = 0; k < system.laws.length; k++) {
+    const law = system.laws[k]!;
+    const diagonal = law.plus < system.size ? law.slots[0] : law.slots[3];
+    const held = Math.abs(real[diagonal]!);
+    const used = jacobian[diagonal]! - system.conductance[diagonal]!;
+    // the stages' conductances are summed: their mean stands for them
+    const needed = held - used + stageConductance[diagonal]! / 3;
+    if (held > worst * needed) worst = needed > 0 ? held / needed : Number.POSITIVE_INFINITY;
+  }
+  return worst;
 }
 
 function factoriseStages(stepper: Stepper, h: number): boolean {
@@ -236,8 +255,8 @@ function iterate(stepper: Stepper, h: number, y: Float64Array): boolean {
     w2[i] = i21 * a + i22 * b + i23 * c;
     w3[i] = i31 * a + i32 * b + i33 * c;
   }
-  // A linear circuit is solved by one iteration. A law may bend where none of the last steps went: the experience made there is not trusted far.
-  let convergence = system.laws.length === 0 ? 0 : Math.max(memory.convergence ** 0.8, LEAST_EXPERIENCE);
+  // one iteration solves a linear circuit
+  const linear = system.laws.length === 0;
   let previous = 0;
   let contraction = 0;
   let previousContraction = 0;
@@ -289,42 +308,46 @@ function iterate(stepper: Stepper, h: number, y: Float64Array): boolean {
       contraction = iteration === 2 ? rate : Math.sqrt(rate * previousContraction);
       previousContraction = rate;
       stepper.contraction = contraction;
-      if (contraction >= 0.99 && update > stepper.newtonTolerance) {
+      if (contraction >= 0.99) {
         // a law that bends within the step may need one more look before it contracts
         if (iteration > 3 || contraction > 10) return false;
       } else {
-        convergence = contraction < 0.99 ? contraction / (1 - contraction) : 1;
+        const convergence = contraction / (1 - contraction);
+        if (convergence * update <= stepper.newtonTolerance) {
+          if (convergence * update * shortfall(stepper) <= stepper.newtonTolerance) return true;
+        }
         const forecast = convergence * update * contraction ** (MAXIMUM_ITERATIONS - 1 - iteration);
         if (forecast > stepper.newtonTolerance && iteration > 2) return false;
       }
-    }
+      // a single small update proves nothing: a conductance taken far too large makes every update small
+    } else if (linear || update === 0) return true;
     previous = Math.max(update, 1e-300);
-    if (convergence * update <= stepper.newtonTolerance) {
-      memory.convergence = convergence;
-      return true;
-    }
   }
   return false;
 }
 
-/** f at the three stages. */
+/**
+ * f at the three stages. The linear part is taken of the increments, over its value at the step's start: its rounding is then the same in every
+ * iteration, and does not keep a node from settling that almost nothing holds.
+ */
 function stageCurrents(stepper: Stepper, y: Float64Array): void {
   const { system, z, memory } = stepper;
-  const at = memory.y;
   const n = system.size;
-  const all = system.vectorLength;
-  const result = memory.law;
+  const { base, law: result, stageConductance } = memory;
   const { laws } = system;
+  // by diagonal entry of the matrix: the conductance of the laws there, summed over the stages
+  for (const law of laws) stageConductance[law.plus < n ? law.slots[0] : law.slots[3]] = 0;
   for (let stage = 0; stage < 3; stage++) {
     const increment = z[stage]!;
     const f = memory.f[stage]!;
     const drive = memory.drive[stage]!;
-    for (let i = 0; i < all; i++) at[i] = y[i]! + increment[i]!;
-    applyConductance(system, at, f);
-    for (let i = 0; i < n; i++) f[i]! += drive[i]!;
+    applyConductance(system, increment, f);
+    for (let i = 0; i < n; i++) f[i]! += base[i]! + drive[i]!;
     for (let k = 0; k < laws.length; k++) {
       const law = laws[k]!;
-      law.evaluate(at[law.first]! - at[law.second]!, result);
+      const { first, second } = law;
+      law.evaluate(y[first]! - y[second]! + (increment[first]! - increment[second]!), result);
+      stageConductance[law.plus < n ? law.slots[0] : law.slots[3]]! += result[1]!;
       f[law.plus]! += result[0]!;
       f[law.minus]! -= result[0]!;
     }

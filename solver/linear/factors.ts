@@ -6,7 +6,7 @@ import type { Pattern } from './pattern.ts';
 import { findPivotOrder, type PivotOrder, type Singular } from './pivot-order.ts';
 
 /** A pivot below this fraction of its row means that the order no longer suits the values. */
-const FADED_PIVOT = 1e-9;
+const FADED_PIVOT = 1e-6;
 
 export interface Elimination {
   readonly order: PivotOrder;
