@@ -1,5 +1,5 @@
 /** Solving an analysis block: one run for each temperature and each combination of varied values, each at two accuracies. */
-import { NoSolution } from '../solver/analysis.ts';
+import { isOverTime, NoSolution } from '../solver/analysis.ts';
 import type { Circuit, Component } from '../solver/circuit.ts';
 import { ZERO_CELSIUS } from '../solver/circuit.ts';
 import { solve } from '../solver/solve.ts';
@@ -39,7 +39,7 @@ export function startAnalysis(block: AnalysisBlock, circuit: Circuit): AnalysisS
 function solveTwice(circuit: Circuit, block: AnalysisBlock, accuracy: number): Pick<Run, 'solution' | 'coarse'> {
   const solution = solve(circuit, block.request, accuracy);
   // an operating point and a characteristic are solved to rounding: a coarser one would be the same
-  if (block.request.find !== 'time response') return { solution, coarse: solution };
+  if (!isOverTime(block.request)) return { solution, coarse: solution };
   try {
     return { solution, coarse: solve(circuit, block.request, accuracy * COARSER) };
   } catch (error) {

@@ -2,6 +2,7 @@
  * From a checked note to its results: every analysis is solved, every figure, plot and number of the prose measured, and whatever the figures'
  * accuracy asks for is solved again more tightly. Author's mistakes that only show here join the note's problems.
  */
+import { isOverTime } from '../solver/analysis.ts';
 import type { CheckedExpression } from './expressions/expression.ts';
 import { judge } from './judge.ts';
 import type { Figure, Note } from './language/model.ts';
@@ -107,7 +108,7 @@ function refineWhereNeeded(
     let refined = false;
     for (const name of wanting) {
       const state = states.get(name);
-      if (state?.block.request.find !== 'time response') continue;
+      if (!state || !isOverTime(state.block.request)) continue;
       if (refineAnalysis(state)) refined = true;
     }
     if (!refined) return;

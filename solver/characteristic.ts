@@ -7,10 +7,14 @@ import type { System } from './equations/system.ts';
 import { setMode } from './equations/system.ts';
 import { createRecorder, type Recorder, recordStep } from './integrator/recorder.ts';
 import { findOperatingPoint, type StaticContext } from './operating-point.ts';
-import { COLLOCATION_NODES } from './waveform/waveform.ts';
+import { COLLOCATION_NODES, lagrangeWeights } from './waveform/waveform.ts';
 
 /** Intervals are not halved below this fraction of the sweep. */
 const SHORTEST = 1e-9;
+
+/** Where in an interval the cubic is checked, and the weights of its nodes there. */
+const CHECKED_AT = 0.4;
+const CHECK_WEIGHTS = lagrangeWeights(CHECKED_AT);
 
 interface Point {
   readonly at: number;
@@ -63,7 +67,8 @@ export function traceCharacteristic(
     const inner = [1, 2].map((s) => solveAt(start.at + COLLOCATION_NODES[s]! * width, start));
     if (inner.some((point) => !sameModes(point.modes, start.modes))) return width > shortest ? halve() : end;
     const nodesOfStep = [start, inner[0]!, inner[1]!, end] as const;
-    if (width > shortest && !cubicFollows(solveAt(start.at + 0.4 * width, inner[0]!), nodesOfStep)) return halve();
+    if (width > shortest && !cubicFollows(solveAt(start.at + CHECKED_AT * width, inner[0]!), nodesOfStep))
+      return halve();
     const z = [inner[0]!.y, inner[1]!.y, end.y].map((y) => y.map((value, i) => value - start.y[i]!));
     recordStep(recorder, start.at, end.at, start.y, [z[0]!, z[1]!, z[2]!], start.modes);
     effort.steps++;
@@ -72,16 +77,9 @@ export function traceCharacteristic(
 
   /** Does the cubic through the four nodes meet a fifth point (0.4 of the way, between two of them)? */
   const cubicFollows = (check: Point, step: readonly [Point, Point, Point, Point]): boolean => {
-    const fraction = 0.4;
-    const weights = COLLOCATION_NODES.map((node, s) =>
-      COLLOCATION_NODES.reduce(
-        (product, other, r) => (r === s ? product : (product * (fraction - other)) / (node - other)),
-        1,
-      ),
-    );
     for (let i = 0; i < system.size; i++) {
       let value = 0;
-      for (let s = 0; s < 4; s++) value += weights[s]! * step[s]!.y[i]!;
+      for (let s = 0; s < 4; s++) value += CHECK_WEIGHTS[s]! * step[s]!.y[i]!;
       const allowed = accuracy * (Math.abs(check.y[i]!) + 0.01 * (i < nodes ? scale.voltage : scale.current));
       if (Math.abs(value - check.y[i]!) > allowed) return false;
     }

@@ -20,6 +20,7 @@ import { createRecorder, type Recorder, recordStep } from './integrator/recorder
 import { needsProbe, restart, unsettled } from './integrator/restart.ts';
 import { findOperatingPoint, type StaticContext, unknownScale } from './operating-point.ts';
 import { highestAngularFrequency, segmentAt, waveCorners } from './wave-evaluation.ts';
+import { lagrangeWeights } from './waveform/waveform.ts';
 
 /** Local errors are held to this fraction of the accuracy asked of a figure: they add up over a period. */
 export const LOCAL_FRACTION = 1;
@@ -61,7 +62,8 @@ interface March {
   h: number;
   /** Unknowns at t, n + 1 elements. */
   readonly y: Float64Array;
-  readonly scale: { voltage: number; current: number };
+  /** Largest potential, branch current and current of a nonlinear law so far. */
+  readonly scale: { voltage: number; current: number; law: number };
   /** Error and step length of the last accepted step, for the predictive controller. */
   lastError: number;
   lastStep: number;
@@ -97,12 +99,12 @@ export function marchInTime(
     t: 0,
     h: 0,
     y,
-    scale: { voltage: 1e-3, current: 1e-9 },
+    scale: { voltage: 1e-3, current: 1e-9, law: 1e-9 },
     lastError: 1e-2,
     lastStep: 0,
     chatter: 0,
   };
-  stepper.newtonTolerance = Math.max((10 * 2.2e-16) / march.tolerance, Math.min(0.01, Math.sqrt(march.tolerance)));
+  stepper.newtonTolerance = Math.max((10 * 2.2e-16) / march.tolerance, Math.min(0.001, Math.sqrt(march.tolerance)));
   bindSegments(system, 0, corners[0]!);
   if (given) {
     y.set(given.y);
@@ -376,8 +378,47 @@ function errorNorm(march: March, h: number): number {
       largest = Math.max(largest, Math.abs(predicted[i]! - z[0][i]!) * weight[i]! * inwards * OUTPUT_FRACTION);
     }
   }
-  return Math.max(count > 0 ? Math.sqrt(square / count) : 0, largest, 1e-6);
+  const drawn = OUTPUT_FRACTION * lawMismatch(march);
+  return Math.max(count > 0 ? Math.sqrt(square / count) : 0, largest, drawn, 1e-6);
 }
+
+/**
+ * How well the dense output of each law's current follows the law, in units of its tolerance: the cubic through the currents at the step's four nodes
+ * against the law at the cubic of the voltage, between two nodes.
+ */
+function lawMismatch(march: March): number {
+  const { system, stepper, y, tolerance } = march;
+  const [z1, z2, z3] = stepper.z;
+  const [w0, w1, w2, w3] = CHECK_WEIGHTS;
+  let worst = 0;
+  for (let k = 0; k < system.laws.length; k++) {
+    const { first, second, evaluate } = system.laws[k]!;
+    const v0 = y[first]! - y[second]!;
+    const d1 = z1[first]! - z1[second]!;
+    const d2 = z2[first]! - z2[second]!;
+    const d3 = z3[first]! - z3[second]!;
+    evaluate(v0, lawResult);
+    let drawn = w0 * lawResult[0]!;
+    let largest = Math.abs(lawResult[0]!);
+    evaluate(v0 + d1, lawResult);
+    drawn += w1 * lawResult[0]!;
+    evaluate(v0 + d2, lawResult);
+    drawn += w2 * lawResult[0]!;
+    evaluate(v0 + d3, lawResult);
+    drawn += w3 * lawResult[0]!;
+    largest = Math.max(largest, Math.abs(lawResult[0]!));
+    evaluate(v0 + w1 * d1 + w2 * d2 + w3 * d3, lawResult);
+    const mismatch = Math.abs(drawn - lawResult[0]!);
+    if (largest > march.scale.law) march.scale.law = largest;
+    if (mismatch > worst * tolerance * march.scale.law) worst = mismatch / (tolerance * march.scale.law);
+  }
+  return worst;
+}
+
+const lawResult = new Float64Array(2);
+
+/** Lagrange weights of the step's four nodes at 0.4 of it, between the two inner nodes. */
+const CHECK_WEIGHTS = lagrangeWeights(0.4);
 
 /** Dense output need not be better than the figures: its error does not add up. */
 const OUTPUT_FRACTION = 0.3;

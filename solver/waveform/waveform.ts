@@ -11,6 +11,17 @@ export const COLLOCATION_NODES = [0, (4 - ROOT6) / 10, (4 + ROOT6) / 10, 1] as c
 /** Weights of the Radau quadrature at nodes 1 to 3, exact for polynomials up to degree 4. */
 export const RADAU_WEIGHTS = [(16 - ROOT6) / 36, (16 + ROOT6) / 36, 1 / 9] as const;
 
+/** Weights of the values at the four nodes in the step's cubic at the fraction `at` (Lagrange). */
+export function lagrangeWeights(at: number): [number, number, number, number] {
+  const weights = COLLOCATION_NODES.map((node) =>
+    COLLOCATION_NODES.reduce(
+      (product, other) => (other === node ? product : (product * (at - other)) / (node - other)),
+      1,
+    ),
+  );
+  return [weights[0]!, weights[1]!, weights[2]!, weights[3]!];
+}
+
 export interface Waveform {
   /** Ends of the steps, ascending, length N + 1. */
   readonly grid: Float64Array;
