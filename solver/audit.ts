@@ -39,9 +39,11 @@ export function auditSolution(solution: Solution): Audit {
       largest.set(node, peak);
     }
   }
+  // a node that carries next to nothing is measured by what its circuit carries
+  const floor = 1e-9 * Math.max(0, ...largest.values());
   let kirchhoff = 0;
   for (const [node, sum] of sums) {
-    const peak = largest.get(node)!;
+    const peak = Math.max(largest.get(node)!, floor);
     if (peak === 0) continue;
     for (let k = 0; k < count; k++) if (isStage(k)) kirchhoff = Math.max(kirchhoff, Math.abs(sum[k]!) / peak);
   }

@@ -104,7 +104,7 @@ export function marchInTime(
     lastStep: 0,
     chatter: 0,
   };
-  stepper.newtonTolerance = Math.max((10 * 2.2e-16) / march.tolerance, Math.min(0.001, Math.sqrt(march.tolerance)));
+  stepper.newtonTolerance = Math.max((10 * 2.2e-16) / march.tolerance, Math.min(0.003, Math.sqrt(march.tolerance)));
   bindSegments(system, 0, corners[0]!);
   if (given) {
     y.set(given.y);

@@ -18,6 +18,9 @@ import { ALPHA, BETA, C1, C2, ERROR_WEIGHTS, GAMMA, T, T_INVERSE } from './radau
 
 const MAXIMUM_ITERATIONS = 10;
 
+/** Remaining error after a second iteration, as a fraction of its update, at least. */
+const UNPROVEN = 0.3;
+
 export interface Stepper {
   readonly system: System;
   readonly effort: Effort;
@@ -54,6 +57,7 @@ interface StepMemory {
   readonly stored: readonly [Float64Array, Float64Array, Float64Array];
   readonly jacobian: Float64Array;
   readonly stageConductance: Float64Array;
+  readonly conductanceOfStage: Float64Array;
   readonly real: Float64Array;
   readonly complexReal: Float64Array;
   readonly complexImaginary: Float64Array;
@@ -91,6 +95,7 @@ export function createStepper(system: System, effort: Effort): Stepper {
       stored: three(),
       jacobian: new Float64Array(entries),
       stageConductance: new Float64Array(entries),
+      conductanceOfStage: new Float64Array(entries),
       real: new Float64Array(entries),
       complexReal: new Float64Array(entries),
       complexImaginary: new Float64Array(entries),
@@ -196,8 +201,7 @@ function shortfall(stepper: Stepper): number {
     const diagonal = law.plus < system.size ? law.slots[0] : law.slots[3];
     const held = Math.abs(real[diagonal]!);
     const used = jacobian[diagonal]! - system.conductance[diagonal]!;
-    // the stages' conductances are summed: their mean stands for them
-    const needed = held - used + stageConductance[diagonal]! / 3;
+    const needed = held - used + stageConductance[diagonal]!;
     if (held > worst * needed) worst = needed > 0 ? held / needed : Number.POSITIVE_INFINITY;
   }
   return worst;
@@ -312,7 +316,8 @@ function iterate(stepper: Stepper, h: number, y: Float64Array): boolean {
         // a law that bends within the step may need one more look before it contracts
         if (iteration > 3 || contraction > 10) return false;
       } else {
-        const convergence = contraction / (1 - contraction);
+        // the first update moves what is linear all the way: set against it, the second shows little of how fast the laws converge
+        const convergence = Math.max(contraction / (1 - contraction), iteration === 2 ? UNPROVEN : 0);
         if (convergence * update <= stepper.newtonTolerance) {
           if (convergence * update * shortfall(stepper) <= stepper.newtonTolerance) return true;
         }
@@ -335,21 +340,28 @@ function stageCurrents(stepper: Stepper, y: Float64Array): void {
   const n = system.size;
   const { base, law: result, stageConductance } = memory;
   const { laws } = system;
-  // by diagonal entry of the matrix: the conductance of the laws there, summed over the stages
+  // by diagonal entry of the matrix: the conductance of the laws there, at the stage where it is least
   for (const law of laws) stageConductance[law.plus < n ? law.slots[0] : law.slots[3]] = 0;
+  const ofStage = memory.conductanceOfStage;
   for (let stage = 0; stage < 3; stage++) {
     const increment = z[stage]!;
     const f = memory.f[stage]!;
     const drive = memory.drive[stage]!;
     applyConductance(system, increment, f);
     for (let i = 0; i < n; i++) f[i]! += base[i]! + drive[i]!;
+    for (const law of laws) ofStage[law.plus < n ? law.slots[0] : law.slots[3]] = 0;
     for (let k = 0; k < laws.length; k++) {
       const law = laws[k]!;
       const { first, second } = law;
       law.evaluate(y[first]! - y[second]! + (increment[first]! - increment[second]!), result);
-      stageConductance[law.plus < n ? law.slots[0] : law.slots[3]]! += result[1]!;
+      ofStage[law.plus < n ? law.slots[0] : law.slots[3]]! += result[1]!;
       f[law.plus]! += result[0]!;
       f[law.minus]! -= result[0]!;
+    }
+    for (const law of laws) {
+      const diagonal = law.plus < n ? law.slots[0] : law.slots[3];
+      const value = ofStage[diagonal]!;
+      if (stage === 0 || value < stageConductance[diagonal]!) stageConductance[diagonal] = value;
     }
   }
 }
