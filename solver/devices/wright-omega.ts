@@ -22,7 +22,7 @@ export function wrightOmega(z: number): number {
     w = 1 + x * (0.5 + x * (0.0625 - x * 0.0052083));
   } else {
     const l = Math.log(z);
-    w = z - l + l / z;
+    w = z - l + (l / z) * (1 + (l - 2) / (2 * z));
   }
   for (let i = 0; i < 2; i++) {
     const residual = z - w - Math.log(w);
@@ -30,7 +30,8 @@ export function wrightOmega(z: number): number {
     const b = a + (2 / 3) * residual;
     const change = ((residual / a) * (a * b - 0.5 * residual)) / (a * b - residual);
     w += w * change;
-    if (Math.abs(change) < 1e-5) break;
+    // the iteration is of fourth order
+    if (Math.abs(change) < 1e-4) break;
   }
   return w;
 }

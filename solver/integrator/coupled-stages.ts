@@ -89,99 +89,158 @@ export function factoriseCoupled(stages: StepSystem, values: Float64Array): bool
   return true;
 }
 
-const coupled = new WeakMap<System, StepSystem>();
-
 /** More than the simplified iteration is given: each iteration is a full one, with voltages limited. */
 const MAXIMUM_ITERATIONS = 60;
+
+/** Newton's method proper squares its error: an update this many times the tolerance leaves one far below it. */
+const QUADRATIC_MARGIN = 10;
+
+const STAGES = [C1, C2, 1] as const;
+
+interface CoupledMemory {
+  readonly stages: StepSystem;
+  readonly values: Float64Array;
+  readonly right: Float64Array;
+  readonly base: Float64Array;
+  readonly currents: Float64Array;
+  readonly result: Float64Array;
+  /** By stage. */
+  readonly jacobians: readonly Float64Array[];
+  readonly drives: readonly Float64Array[];
+  readonly charges: readonly Float64Array[];
+  /** The voltage about which each law was last evaluated. */
+  readonly points: readonly Float64Array[];
+}
+
+const memories = new WeakMap<System, CoupledMemory>();
+
+function memoryOf(system: System): CoupledMemory {
+  let memory = memories.get(system);
+  if (!memory) {
+    const { size, laws, pattern } = system;
+    const stages = createStepSystem(system);
+    const three = (length: number): Float64Array[] => STAGES.map(() => new Float64Array(length));
+    memory = {
+      stages,
+      values: new Float64Array(stages.pattern.column.length),
+      right: new Float64Array(3 * size),
+      base: new Float64Array(size + 1),
+      currents: new Float64Array(size + 1),
+      result: new Float64Array(2),
+      jacobians: three(pattern.column.length + 1),
+      drives: three(size + 1),
+      charges: three(size + 1),
+      points: three(laws.length),
+    };
+    memories.set(system, memory);
+  }
+  return memory;
+}
 
 /**
  * Solves the collocation equations by Newton's method proper, from increments of zero, with the junctions limited device by device at every stage.
  * Leaves the increments in `stepper.z`; false where it does not converge either.
  */
 export function solveStagesFully(stepper: Stepper, t: number, h: number, y: Float64Array): boolean {
-  const { system, z, weight, effort } = stepper;
-  const { size, laws } = system;
-  let stages = coupled.get(system);
-  if (!stages) {
-    stages = createStepSystem(system);
-    coupled.set(system, stages);
+  const { system, z, effort } = stepper;
+  const { laws } = system;
+  const memory = memoryOf(system);
+  applyConductance(system, y, memory.base);
+  for (let a = 0; a < 3; a++) {
+    const increment = z[a]!;
+    const time = t + STAGES[a]! * h;
+    increment.fill(0);
+    for (const { index, sign, segment } of system.driven)
+      increment[index] = sign * evaluateSegment(segment, time) - y[index]!;
+    evaluateDrives(system, time, memory.drives[a]!);
+    const points = memory.points[a]!;
+    for (let k = 0; k < laws.length; k++) points[k] = y[laws[k]!.first]! - y[laws[k]!.second]!;
   }
-  const nodes = [C1, C2, 1];
-  for (const increment of z) increment.fill(0);
-  for (const { index, sign, segment } of system.driven) {
-    nodes.forEach((node, a) => {
-      z[a]![index] = sign * evaluateSegment(segment, t + node * h) - y[index]!;
-    });
-  }
-  const base = new Float64Array(size + 1);
-  applyConductance(system, y, base);
-  const values = new Float64Array(stages.pattern.column.length);
-  const right = new Float64Array(3 * size);
-  const jacobians = nodes.map(() => new Float64Array(system.pattern.column.length + 1));
-  const drives = nodes.map((node) => {
-    const drive = new Float64Array(size + 1);
-    evaluateDrives(system, t + node * h, drive);
-    return drive;
-  });
-  const currents = new Float64Array(size + 1);
-  const charges = z.map(() => new Float64Array(size + 1));
-  const result = new Float64Array(2);
-  const points = nodes.map(() => Float64Array.from(laws, (law) => y[law.first]! - y[law.second]!));
   for (let iteration = 1; iteration <= MAXIMUM_ITERATIONS; iteration++) {
     effort.newtonIterations++;
     effort.factorisations++;
-    z.forEach((increment, a) => {
-      applyStorage(system, increment, charges[a]!);
-    });
-    for (let a = 0; a < 3; a++) {
-      const increment = z[a]!;
-      applyConductance(system, increment, currents);
-      const jacobian = jacobians[a]!;
-      jacobian.set(system.conductance);
-      laws.forEach((law, k) => {
-        const point = points[a]![k]!;
-        law.evaluate(point, result);
-        const v = y[law.first]! - y[law.second]! + (increment[law.first]! - increment[law.second]!);
-        const current = result[0]! + result[1]! * (v - point);
-        currents[law.plus]! += current;
-        currents[law.minus]! -= current;
-        addLawConductance(law.slots, result[1]!, jacobian);
-      });
-      const [w0, w1, w2] = A_INVERSE[a]!;
-      for (let i = 0; i < size; i++) {
-        const stored = (w0! * charges[0]![i]! + w1! * charges[1]![i]! + w2! * charges[2]![i]!) / h;
-        right[a * size + i] = -(base[i]! + currents[i]! + drives[a]![i]! + stored);
-      }
-    }
-    assembleStages(system, stages, h, jacobians, values);
-    if (!factoriseCoupled(stages, values)) return false;
-    solveFactored(stages.factors!, right);
-    let update = 0;
-    for (let a = 0; a < 3; a++) {
-      for (let i = 0; i < size; i++) {
-        const change = right[a * size + i]!;
-        z[a]![i]! += change;
-        const scaled = Math.abs(change) * weight[i]!;
-        if (!(scaled <= update)) {
-          update = scaled;
-          stepper.worst = i;
-        }
-      }
-    }
+    linearise(stepper, memory, h, y);
+    assembleStages(system, memory.stages, h, memory.jacobians, memory.values);
+    if (!factoriseCoupled(memory.stages, memory.values)) return false;
+    solveFactored(memory.stages.factors!, memory.right);
+    const update = addUpdate(stepper, memory.right);
     if (!(update < 1e100)) return false;
-    let limited = false;
-    for (let a = 0; a < 3; a++) {
-      laws.forEach((law, k) => {
-        const asked = y[law.first]! - y[law.second]! + (z[a]![law.first]! - z[a]![law.second]!);
-        const taken = law.limit ? law.limit(points[a]![k]!, asked) : asked;
-        if (Math.abs(taken - asked) > 1e-9 * Math.abs(asked)) limited = true;
-        points[a]![k] = taken;
-      });
-    }
-    if (!limited && update <= 0.1 * stepper.newtonTolerance) {
+    const limited = movePoints(stepper, memory, y);
+    if (!limited && update <= QUADRATIC_MARGIN * stepper.newtonTolerance) {
       stepper.iterations = Math.min(iteration, 10);
       return true;
     }
   }
   return false;
+}
+
+/** Residuals and conductances of all stages, each law taken as linear about its point. */
+function linearise(stepper: Stepper, memory: CoupledMemory, h: number, y: Float64Array): void {
+  const { system, z } = stepper;
+  const { size, laws } = system;
+  const { base, currents, charges, drives, jacobians, points, result, right } = memory;
+  for (let a = 0; a < 3; a++) applyStorage(system, z[a]!, charges[a]!);
+  for (let a = 0; a < 3; a++) {
+    const increment = z[a]!;
+    const jacobian = jacobians[a]!;
+    const point = points[a]!;
+    applyConductance(system, increment, currents);
+    jacobian.set(system.conductance);
+    for (let k = 0; k < laws.length; k++) {
+      const law = laws[k]!;
+      const { first, second } = law;
+      law.evaluate(point[k]!, result);
+      const v = y[first]! - y[second]! + (increment[first]! - increment[second]!);
+      const current = result[0]! + result[1]! * (v - point[k]!);
+      currents[law.plus]! += current;
+      currents[law.minus]! -= current;
+      addLawConductance(law.slots, result[1]!, jacobian);
+    }
+    const w0 = A_INVERSE[a]![0]! / h;
+    const w1 = A_INVERSE[a]![1]! / h;
+    const w2 = A_INVERSE[a]![2]! / h;
+    const drive = drives[a]!;
+    for (let i = 0; i < size; i++) {
+      const stored = w0 * charges[0]![i]! + w1 * charges[1]![i]! + w2 * charges[2]![i]!;
+      right[a * size + i] = -(base[i]! + currents[i]! + drive[i]! + stored);
+    }
+  }
+}
+
+/** Adds the update to the increments; its largest element in units of the tolerance. */
+function addUpdate(stepper: Stepper, update: Float64Array): number {
+  const { system, z, weight } = stepper;
+  const { size } = system;
+  let largest = 0;
+  for (let a = 0; a < 3; a++) {
+    const increment = z[a]!;
+    for (let i = 0; i < size; i++) {
+      const change = update[a * size + i]!;
+      increment[i]! += change;
+      const scaled = Math.abs(change) * weight[i]!;
+      if (!(scaled <= largest)) {
+        largest = scaled;
+        stepper.worst = i;
+      }
+    }
+  }
+  return largest;
+}
+
+/** Moves each law's point to the new voltage, as far as the law allows; true where one was held back. */
+function movePoints(stepper: Stepper, memory: CoupledMemory, y: Float64Array): boolean {
+  const { system, z } = stepper;
+  let limited = false;
+  for (let a = 0; a < 3; a++) {
+    const increment = z[a]!;
+    const points = memory.points[a]!;
+    for (let k = 0; k < system.laws.length; k++) {
+      const { first, second, limit } = system.laws[k]!;
+      const asked = y[first]! - y[second]! + (increment[first]! - increment[second]!);
+      const taken = limit ? limit(points[k]!, asked) : asked;
+      if (Math.abs(taken - asked) > 1e-9 * Math.abs(asked)) limited = true;
+      points[k] = taken;
+    }
+  }
+  return limited;
 }
