@@ -161,11 +161,16 @@ function stepSources(attempt: Attempt, y: Float64Array): boolean {
   return true;
 }
 
+/** Volt or ampere: beyond this no rest is to be expected. */
+const RUNAWAY = 1e9;
+
 function followPseudoTransient(attempt: Attempt, y: Float64Array): boolean {
   let rate = 1e9;
   for (let step = 0; step < 400 && rate > 1e-9; step++) {
     const good = y.slice();
     const outcome = attempt({ rate, nodeCapacitance: 1e-9, chargeRows: false });
+    // a circuit that runs away (a falling characteristic that outweighs the rest) has no point to come to
+    if (y.some((value) => Math.abs(value) > RUNAWAY)) return false;
     if (outcome.converged) {
       rate /= outcome.iterations < 8 ? 4 : 1.5;
     } else {
