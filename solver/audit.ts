@@ -3,7 +3,7 @@
  * voltage as a figure would, and does not share the assembly of the equations.
  */
 import type { Audit, Solution } from './analysis.ts';
-import { REFERENCE_NODE } from './circuit.ts';
+import { type Component, REFERENCE_NODE } from './circuit.ts';
 import { readQuantity } from './quantities.ts';
 
 export function auditSolution(solution: Solution): Audit {
@@ -13,6 +13,9 @@ export function auditSolution(solution: Solution): Audit {
   const largest = new Map<string, number>();
   const power = new Float64Array(count);
   const magnitude = new Float64Array(count);
+  // what the rounding of potentials alone lets a current into the node, and the sum of powers, be wrong by
+  const roundedCurrent = new Map<string, number>();
+  let roundedPower = 0;
   // the first node of a step is the end of the one before, or follows from a jump: the stages are what was solved
   const isStage = (k: number): boolean => k % 4 !== 0;
   for (const component of components) {
@@ -23,6 +26,14 @@ export function auditSolution(solution: Solution): Audit {
       const p = voltage[k]! * current[k]!;
       power[k]! += p;
       magnitude[k]! += Math.abs(p);
+    }
+    const conductance = conductanceOf(component);
+    if (conductance > 0) {
+      const potentials = nodes.map((node) => greatestMagnitude(readQuantity(solution, { node }).values));
+      const potential = Math.max(...potentials);
+      const rounding = POTENTIAL_ROUNDING * (conductance * potential + greatestTabled(component));
+      for (const node of nodes) roundedCurrent.set(node, (roundedCurrent.get(node) ?? 0) + rounding);
+      roundedPower += potential * rounding;
     }
     for (const [node, sign] of [
       [nodes[0], 1],
@@ -45,12 +56,39 @@ export function auditSolution(solution: Solution): Audit {
   for (const [node, sum] of sums) {
     const peak = Math.max(largest.get(node)!, floor);
     if (peak === 0) continue;
-    for (let k = 0; k < count; k++) if (isStage(k)) kirchhoff = Math.max(kirchhoff, Math.abs(sum[k]!) / peak);
+    const rounding = roundedCurrent.get(node) ?? 0;
+    for (let k = 0; k < count; k++)
+      if (isStage(k)) kirchhoff = Math.max(kirchhoff, (Math.abs(sum[k]!) - rounding) / peak);
   }
   let tellegen = 0;
   let greatest = 0;
   for (let k = 0; k < count; k++) greatest = Math.max(greatest, magnitude[k]!);
   if (greatest > 0)
-    for (let k = 0; k < count; k++) if (isStage(k)) tellegen = Math.max(tellegen, Math.abs(power[k]!) / greatest);
+    for (let k = 0; k < count; k++)
+      if (isStage(k)) tellegen = Math.max(tellegen, (Math.abs(power[k]!) - roundedPower) / greatest);
   return { kirchhoff, tellegen };
+}
+
+/** Relative rounding of the difference of two potentials, each off by a unit in its last place or two. */
+const POTENTIAL_ROUNDING = 4 * Number.EPSILON;
+
+/** Siemens by which potentials are turned into a current; 0 where the current is found otherwise. */
+function conductanceOf(component: Component): number {
+  if (component.kind === 'resistor') return Math.abs(1 / component.resistance);
+  if (component.kind === 'curve') {
+    const { voltages, currents } = component;
+    const secants = currents.slice(1).map((i, k) => (i - currents[k]!) / (voltages[k + 1]! - voltages[k]!));
+    return secants.reduce((greatest, secant) => Math.max(greatest, Math.abs(secant)), 0);
+  }
+  const byVoltage = component.kind === 'controlled-source' && component.control.quantity === 'voltage';
+  return byVoltage && component.output === 'current' ? Math.abs(component.gain) : 0;
+}
+
+/** The largest current (ampere) of a table, of which interpolated ones are differences. */
+function greatestTabled(component: Component): number {
+  return component.kind === 'curve' ? component.currents.reduce((most, i) => Math.max(most, Math.abs(i)), 0) : 0;
+}
+
+function greatestMagnitude(values: Float64Array): number {
+  return values.reduce((greatest, value) => Math.max(greatest, Math.abs(value)), 0);
 }
