@@ -12,6 +12,9 @@ import { type NewtonOutcome, PLAIN, type StaticProblem, solveNewton } from './ne
 /** Siemens across an open threshold device or switch where nothing else would tie a node down. */
 export const OPEN_LEAK = 1e-12;
 
+/** Ohm in a closed one where nothing else would share a current out. */
+export const CONTACT_RESISTANCE = 1e-9;
+
 /** A mode is left only for a reason larger than rounding: volt or ampere relative to the level or the largest unknown. */
 const MODE_TOLERANCE = 1e-10;
 
@@ -91,7 +94,7 @@ function solveWithFallbacks(system: System, y: Float64Array, context: StaticCont
   if (outcome.converged) return;
   if (outcome.singularColumns && system.modal.length > 0) {
     // open contacts may leave a node with nothing to hold it
-    for (let k = 0; k < system.modal.length; k++) setMode(system, k, system.modes[k]!, OPEN_LEAK);
+    for (let k = 0; k < system.modal.length; k++) setMode(system, k, system.modes[k]!, OPEN_LEAK, CONTACT_RESISTANCE);
     y.set(guess);
     outcome = attempt({});
     if (outcome.converged) return;

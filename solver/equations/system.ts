@@ -135,16 +135,17 @@ export interface Exit {
 
 /**
  * Puts a modal device into a mode: writes its branch equation into `conductance` and `constant`. An open device gets the
- * conductance `leak` (siemens), which is zero except where nothing else would tie a node down.
+ * conductance `leak` (siemens), a closed one the resistance `contact` (ohm); both are zero except where nothing else would fix a potential
+ * or a current.
  */
-export function setMode(system: System, device: number, mode: number, leak = 0): void {
+export function setMode(system: System, device: number, mode: number, leak = 0, contact = 0): void {
   const modal = system.modal[device]!;
   const { voltage, current, constant } = modal.modes[mode]!;
   const [first, second, own] = modal.slots;
   const across = voltage === 0 ? -leak : voltage;
   system.conductance[first] = across;
   system.conductance[second] = -across;
-  system.conductance[own] = current;
+  system.conductance[own] = voltage === 0 ? current : current - contact;
   const [drivenFirst, drivenSecond] = modal.drivenSlots;
   system.conductanceOfDriven[drivenFirst] = across;
   system.conductanceOfDriven[drivenSecond] = -across;

@@ -3,10 +3,11 @@
  * and voltage-driven switches are put into the modes that the circuit then asks for.
  */
 import { NoSolution } from '../analysis.ts';
+import { applyStorage } from '../equations/evaluate.ts';
 import type { System } from '../equations/system.ts';
 import { setMode } from '../equations/system.ts';
 import { PLAIN, solveNewton } from '../newton.ts';
-import { inconsistentDevice, OPEN_LEAK, type StaticContext } from '../operating-point.ts';
+import { CONTACT_RESISTANCE, inconsistentDevice, OPEN_LEAK, type StaticContext } from '../operating-point.ts';
 import { START_WEIGHTS } from './radau-coefficients.ts';
 import { forgetHistory, type Stepper, solveStages } from './radau-step.ts';
 
@@ -30,12 +31,28 @@ export function restart(
   const tiny = TINY * span;
   const limit = 8 * system.modal.length + 64;
   const idealLoops = needsProbe(system);
+  let lacking = missing;
   const before = y.slice();
   for (let attempt = 0; attempt <= limit; attempt++) {
+    const takeFirst = attempt > 2 * system.modal.length + 4;
     y.set(before);
-    holdCharges(stepper, t, tiny, missing, y, context);
-    if (idealLoops) probe(stepper, t, PROBE * span, y);
-    const next = inconsistentDevice(system, y, attempt > 2 * system.modal.length + 4);
+    holdCharges(stepper, t, tiny, lacking, y, context);
+    let next: ReturnType<typeof inconsistentDevice>;
+    if (lacking || movedCharge(system, before, y)) {
+      // Charge or flux was moved in no time. Its impulse may put a device into another mode; if not, what it leaves behind is where things go on from.
+      next = lacking ? undefined : inconsistentDevice(system, y, takeFirst);
+      if (!next) {
+        // the impulse itself is over: unknowns without memory start afresh
+        for (let i = 0; i < system.size; i++) if (!system.dynamic[i]) y[i] = 0;
+        before.set(y);
+        lacking = undefined;
+        holdCharges(stepper, t, tiny, undefined, y, context);
+      }
+    }
+    if (!next) {
+      if (idealLoops) probe(stepper, t, PROBE * span, y);
+      next = inconsistentDevice(system, y, takeFirst);
+    }
     if (!next) {
       forgetHistory(stepper);
       return;
@@ -52,6 +69,24 @@ export function restart(
       });
     }
   }
+}
+
+/** Charges and fluxes change by less than this fraction of the largest in a tiny step, unless an impulse moves them. */
+const MOVED = 1e-7;
+
+function movedCharge(system: System, before: Float64Array, after: Float64Array): boolean {
+  const change = after.map((value, i) => value - before[i]!);
+  const moved = new Float64Array(system.size + 1);
+  const held = new Float64Array(system.size + 1);
+  applyStorage(system, change, moved);
+  applyStorage(system, before, held);
+  let largest = 0;
+  let scale = 0;
+  for (let i = 0; i < system.size; i++) {
+    largest = Math.max(largest, Math.abs(moved[i]!));
+    scale = Math.max(scale, Math.abs(held[i]!), Math.abs(held[i]! + moved[i]!));
+  }
+  return largest > MOVED * scale;
 }
 
 function holdCharges(
@@ -78,10 +113,10 @@ function holdCharges(
   if (attempt(false)) return;
   if (system.modal.length > 0) {
     y.set(guess);
-    for (let k = 0; k < system.modal.length; k++) setMode(system, k, system.modes[k]!, OPEN_LEAK);
+    for (let k = 0; k < system.modal.length; k++) setMode(system, k, system.modes[k]!, OPEN_LEAK, CONTACT_RESISTANCE);
     if (attempt(false)) {
       context.remarks.add(
-        'open switches and threshold devices were given a leak of 1 pS, since nothing else ties a node down',
+        'ideal contacts were given a leak of 1 pS where open and 1 nΩ where closed, since nothing else fixes a potential or shares out a current',
       );
       return;
     }
