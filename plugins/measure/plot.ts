@@ -1,6 +1,5 @@
 /** A plot's curves: each line of the block evaluated for every run. */
 import type { AnalysisRequest } from '../../solver/analysis.ts';
-import { peak } from '../../solver/waveform/extremes.ts';
 import type { Waveform } from '../../solver/waveform/waveform.ts';
 import { CURRENT, type Dimension, equal, nameOf, TIME, VOLTAGE } from '../language/dimensions.ts';
 import type { Note, PlotBlock, PlotLine } from '../language/model.ts';
@@ -56,7 +55,7 @@ export function measurePlot(
       );
     }
     const stated = curves.find(({ line }) => line.unit !== undefined)?.line.unit;
-    const unit = fromUnitText(stated, dimension, Math.max(...curves.map(({ waveform }) => peak(waveform))));
+    const unit = fromUnitText(stated, dimension, Math.max(...curves.map(({ waveform }) => largest(waveform))));
     units.set(side, { text: unit.text, scale: 1 / unit.factor });
   }
   const against = block.against;
@@ -86,6 +85,13 @@ export function measurePlot(
   });
   if (curves.length === 0) return { failures };
   return { solved: { block, horizontal: horizontalAxis(block, note, state, curves), curves, spans }, failures };
+}
+
+/** Largest magnitude of what is drawn; gaps do not count. */
+function largest({ values }: Waveform): number {
+  let magnitude = 0;
+  for (const value of values) if (Math.abs(value) > magnitude) magnitude = Math.abs(value);
+  return magnitude;
 }
 
 function evaluateWaveform(
@@ -119,8 +125,8 @@ function horizontalAxis(
 ): SolvedPlot['horizontal'] {
   if (block.against) {
     const { dimension, text } = block.against;
-    const largest = Math.max(...curves.map(({ against }) => (against ? peak(against) : 0)));
-    const unit = fromUnitText(undefined, dimension, largest);
+    const extent = Math.max(...curves.map(({ against }) => (against ? largest(against) : 0)));
+    const unit = fromUnitText(undefined, dimension, extent);
     return { label: text, unit: unit.text, scale: 1 / unit.factor };
   }
   const { request } = state.block;

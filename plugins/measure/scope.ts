@@ -53,7 +53,23 @@ export function createNoteScope(
     }
     return value;
   };
-  const constant = (circuit: string, designator: string, path: string): number => {
+  /** A component's datum; its value is the varied one where an analysis that the expression draws on varies it. */
+  const constant = (
+    circuit: string,
+    designator: string,
+    path: string,
+    run: number,
+    used: readonly string[],
+  ): number => {
+    if (path === 'value') {
+      for (const name of used) {
+        const state = states.get(name);
+        if (state?.block.circuit !== circuit) continue;
+        const { conditions } = state.runs[state.runs.length === 1 ? 0 : run]!;
+        const varied = conditions.find((condition) => condition.name === designator);
+        if (varied) return varied.value;
+      }
+    }
     for (const block of note.blocks) {
       if (block.kind !== 'circuit' || block.name !== circuit) continue;
       const datum = block.components.find((component) => component.designator === designator)?.data?.[path];
@@ -75,10 +91,11 @@ export function createNoteScope(
     Math.max(1, ...analysesOf(expression).map((name) => states.get(name)?.runs.length ?? 1));
 
   const evaluate = (expression: CheckedExpression, run: number, fidelity: Fidelity): Evaluation | 'pending' => {
-    if (analysesOf(expression).some((name) => !states.has(name))) return 'pending';
+    const used = analysesOf(expression);
+    if (used.some((name) => !states.has(name))) return 'pending';
     const scope: Scope = {
       read: (analysis, quantity) => read(analysis, quantity, run, fidelity),
-      constant,
+      constant: (circuit, designator, path) => constant(circuit, designator, path, run, used),
       figure: (name, other) => {
         if (other !== undefined) return foreignFigure(other, name);
         const figure = figures.get(name);
