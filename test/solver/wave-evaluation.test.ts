@@ -133,7 +133,10 @@ const simple: fc.Arbitrary<Wave> = fc.oneof(
     .record({ steps: fc.array(fc.tuple(fraction, level), { minLength: 2, maxLength: 6 }), repeat: fc.boolean() })
     .map(({ steps, repeat }): Wave => {
       let t = 0;
-      const times = steps.map(([dt], k) => (k === 0 ? 0 : (t += dt)));
+      const times = steps.map(([dt], k) => {
+        if (k > 0) t += dt;
+        return t;
+      });
       const wanted = steps.map(([, value]) => value);
       if (repeat) wanted[wanted.length - 1] = wanted[0]!;
       return { shape: 'points', times, values: wanted, repeat };
