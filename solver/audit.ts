@@ -3,7 +3,8 @@
  * voltage as a figure would, and does not share the assembly of the equations.
  */
 import type { Audit, Solution } from './analysis.ts';
-import { type Component, REFERENCE_NODE } from './circuit.ts';
+import { type Rounding, roundingOf } from './audit-rounding.ts';
+import { REFERENCE_NODE } from './circuit.ts';
 import { readQuantity } from './quantities.ts';
 
 export function auditSolution(solution: Solution): Audit {
@@ -13,9 +14,6 @@ export function auditSolution(solution: Solution): Audit {
   const largest = new Map<string, number>();
   const power = new Float64Array(count);
   const magnitude = new Float64Array(count);
-  // what the rounding of potentials alone lets a current into the node, and the sum of powers, be wrong by
-  const roundedCurrent = new Map<string, number>();
-  let roundedPower = 0;
   // the first node of a step is the end of the one before, or follows from a jump: the stages are what was solved
   const isStage = (k: number): boolean => k % 4 !== 0;
   for (const component of components) {
@@ -26,14 +24,6 @@ export function auditSolution(solution: Solution): Audit {
       const p = voltage[k]! * current[k]!;
       power[k]! += p;
       magnitude[k]! += Math.abs(p);
-    }
-    const conductance = conductanceOf(component);
-    if (conductance > 0) {
-      const potentials = nodes.map((node) => greatestMagnitude(readQuantity(solution, { node }).values));
-      const potential = Math.max(...potentials);
-      const rounding = POTENTIAL_ROUNDING * (conductance * potential + greatestTabled(component));
-      for (const node of nodes) roundedCurrent.set(node, (roundedCurrent.get(node) ?? 0) + rounding);
-      roundedPower += potential * rounding;
     }
     for (const [node, sign] of [
       [nodes[0], 1],
@@ -50,45 +40,29 @@ export function auditSolution(solution: Solution): Audit {
       largest.set(node, peak);
     }
   }
+  const { grid } = solution;
+  const rounding = roundingOf(solution);
+  /** How much of `value` at point k rounding does not account for. */
+  const beyond = (value: number, { steady, charge }: Rounding, k: number): number => {
+    const width = (grid[(k >> 2) + 1] ?? 0) - grid[k >> 2]!;
+    return Math.abs(value) - steady - (width > 0 ? charge / width : 0);
+  };
   // a node that carries next to nothing is measured by what its circuit carries
   const floor = 1e-9 * Math.max(0, ...largest.values());
   let kirchhoff = 0;
   for (const [node, sum] of sums) {
     const peak = Math.max(largest.get(node)!, floor);
     if (peak === 0) continue;
-    const rounding = roundedCurrent.get(node) ?? 0;
-    for (let k = 0; k < count; k++)
-      if (isStage(k)) kirchhoff = Math.max(kirchhoff, (Math.abs(sum[k]!) - rounding) / peak);
+    const allowed = rounding.currents.get(node) ?? NO_ROUNDING;
+    for (let k = 0; k < count; k++) if (isStage(k)) kirchhoff = Math.max(kirchhoff, beyond(sum[k]!, allowed, k) / peak);
   }
   let tellegen = 0;
   let greatest = 0;
   for (let k = 0; k < count; k++) greatest = Math.max(greatest, magnitude[k]!);
   if (greatest > 0)
     for (let k = 0; k < count; k++)
-      if (isStage(k)) tellegen = Math.max(tellegen, (Math.abs(power[k]!) - roundedPower) / greatest);
+      if (isStage(k)) tellegen = Math.max(tellegen, beyond(power[k]!, rounding.power, k) / greatest);
   return { kirchhoff, tellegen };
 }
 
-/** Relative rounding of the difference of two potentials, each off by a unit in its last place or two. */
-const POTENTIAL_ROUNDING = 4 * Number.EPSILON;
-
-/** Siemens by which potentials are turned into a current; 0 where the current is found otherwise. */
-function conductanceOf(component: Component): number {
-  if (component.kind === 'resistor') return Math.abs(1 / component.resistance);
-  if (component.kind === 'curve') {
-    const { voltages, currents } = component;
-    const secants = currents.slice(1).map((i, k) => (i - currents[k]!) / (voltages[k + 1]! - voltages[k]!));
-    return secants.reduce((greatest, secant) => Math.max(greatest, Math.abs(secant)), 0);
-  }
-  const byVoltage = component.kind === 'controlled-source' && component.control.quantity === 'voltage';
-  return byVoltage && component.output === 'current' ? Math.abs(component.gain) : 0;
-}
-
-/** The largest current (ampere) of a table, of which interpolated ones are differences. */
-function greatestTabled(component: Component): number {
-  return component.kind === 'curve' ? component.currents.reduce((most, i) => Math.max(most, Math.abs(i)), 0) : 0;
-}
-
-function greatestMagnitude(values: Float64Array): number {
-  return values.reduce((greatest, value) => Math.max(greatest, Math.abs(value)), 0);
-}
+const NO_ROUNDING: Rounding = { steady: 0, charge: 0 };
