@@ -4,6 +4,7 @@ import type { Circuit, Component } from './circuit.ts';
 import { REFERENCE_NODE } from './circuit.ts';
 import { buildSystem } from './equations/build-system.ts';
 import type { System } from './equations/system.ts';
+import { smoothStarts } from './smooth-starts.ts';
 import { evaluateSegment, segmentAt, waveCorners } from './wave-evaluation.ts';
 import { COLLOCATION_NODES, type Waveform } from './waveform/waveform.ts';
 import type { Wave } from './waves.ts';
@@ -144,7 +145,13 @@ function readCurrent(reader: Reader, component: Component, voltage: () => Float6
     }
     case 'capacitor': {
       const capacitance = storageOf(reader, component, 'capacitor');
-      return derivativeAtNodes(solution.grid, voltage()).map((value) => capacitance * value);
+      if (!isOverTime(solution.request)) return voltage().fill(0);
+      const current = derivativeAtNodes(solution.grid, voltage()).map((value) => capacitance * value);
+      // extrapolated from the stages to the start of the step it is of low order; where nothing jumps, the step before knows it better
+      smoothStarts(solution, system).forEach((smooth, step) => {
+        if (smooth) current[4 * step] = current[4 * step - 1]!;
+      });
+      return current;
     }
     case 'current-source':
       return driveValues(solution, system.drives.find(({ designator }) => designator === component.designator)!);
