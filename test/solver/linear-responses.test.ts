@@ -170,11 +170,9 @@ describe('the error keeps the accuracy asked, at every place, and falls with it'
       const errors = accuracies.map((accuracy) =>
         worstError(timeResponse(circuit(...components), until, accuracy, 'rest'), name, of, until),
       );
-      // a capacitor's current and an inductor's voltage are derivatives of the dense output
-      const allowance = name === 'C1.i' || name === 'L1.v' ? 1.5 : 1;
       errors.forEach((error, k) => {
         // 1e-13: rounding over the steps
-        expect(error, `${name} at accuracy ${accuracies[k]}`).toBeLessThan(Math.max(allowance * accuracies[k]!, 1e-13));
+        expect(error, `${name} at accuracy ${accuracies[k]}`).toBeLessThan(Math.max(accuracies[k]!, 1e-13));
       });
       // over the six decades the error falls by at least five
       expect(errors[0]! / Math.max(errors[6]!, 1e-14), `${name}: ${errors}`).toBeGreaterThan(
