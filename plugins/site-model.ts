@@ -1,6 +1,6 @@
 /** All notes of a site, read and solved: what the pages are made from. */
 import { existsSync, readdirSync, readFileSync } from 'node:fs';
-import { join, relative, sep } from 'node:path';
+import { basename, join, relative, sep } from 'node:path';
 import type { CheckContext, FigureInScope } from './expressions/context.ts';
 import type { Note } from './language/model.ts';
 import { readNote } from './language/read-note.ts';
@@ -28,55 +28,75 @@ export function lastSiteModel(): SiteModel | undefined {
 
 /** Reads and solves every note below the notes' folder. */
 export function buildSiteModel(folders: SiteFolders): SiteModel {
-  const files = listNotes(folders.notesFolder);
-  const texts = new Map(files.map((file) => [file, readFileSync(file, 'utf8')]));
-  const shown = (file: string): string => relative(folders.projectRoot, file).split(sep).join('/');
-  const idOf = (file: string): string => relative(folders.notesFolder, file).split(sep).at(-1)!.replace(/\.md$/i, '');
-  const ids = files.map(idOf);
-  const read = new Map<string, Note>();
+  const { projectRoot, partsFolder } = folders;
+  const files = new Map<string, string>();
+  for (const file of listNotes(folders.notesFolder)) files.set(basename(file).replace(/\.md$/i, ''), file);
+  const reader = createNoteReader({
+    projectRoot,
+    partsFolder,
+    ids: [...files.keys()],
+    find: (id) => {
+      const file = files.get(id);
+      return file === undefined
+        ? undefined
+        : { file: relative(projectRoot, file).split(sep).join('/'), text: readFileSync(file, 'utf8') };
+    },
+  });
+  last = { notes: [...files.keys()].map((id) => reader.solve(id)!) };
+  return last;
+}
+
+export interface NoteReader {
+  /** The note of this name, read and solved once; nothing where there is none. */
+  readonly solve: (id: string) => SolvedNote | undefined;
+}
+
+/** Reads and solves notes that may refer to each other's figures; a circle of references leaves the figure without a value. */
+export function createNoteReader(options: {
+  readonly projectRoot: string;
+  readonly partsFolder: string;
+  /** Names to suggest where one is unknown. */
+  readonly ids: readonly string[];
+  readonly find: (id: string) => { readonly file: string; readonly text: string } | undefined;
+}): NoteReader {
+  const notes = new Map<string, Note | undefined>();
   const reading = new Set<string>();
   const solved = new Map<string, SolvedNote>();
   const solving = new Set<string>();
 
-  const readById = (id: string): Note | undefined => {
-    const file = files[ids.indexOf(id)];
-    if (file === undefined || reading.has(id)) return undefined;
-    let note = read.get(id);
-    if (!note) {
-      reading.add(id);
-      note = readNote(texts.get(file)!, {
-        file: shown(file),
-        projectRoot: folders.projectRoot,
-        partsFolder: folders.partsFolder,
-        otherNotes,
-      });
-      reading.delete(id);
-      read.set(id, note);
-    }
+  const read = (id: string): Note | undefined => {
+    if (notes.has(id)) return notes.get(id);
+    const found = reading.has(id) ? undefined : options.find(id);
+    if (!found) return undefined;
+    reading.add(id);
+    const { projectRoot, partsFolder } = options;
+    const note = readNote(found.text, { file: found.file, projectRoot, partsFolder, otherNotes });
+    reading.delete(id);
+    notes.set(id, note);
     return note;
   };
   const otherNotes: Pick<CheckContext, 'foreignFigure' | 'notes'> = {
-    notes: ids,
+    notes: options.ids,
     foreignFigure: (id, name): FigureInScope | 'unknown note' | 'unknown figure' => {
-      const note = readById(id);
+      const note = read(id);
       if (!note) return 'unknown note';
       for (const block of note.blocks) {
-        if (block.kind !== 'figures') continue;
-        const figure = block.figures.find((candidate) => candidate.name === name);
+        const figure =
+          block.kind === 'figures' ? block.figures.find((candidate) => candidate.name === name) : undefined;
         if (figure) return { kind: figure.expression.kind, dimension: figure.expression.dimension };
       }
       return 'unknown figure';
     },
   };
-  const solveById = (id: string): SolvedNote | undefined => {
+  const solve = (id: string): SolvedNote | undefined => {
     const known = solved.get(id);
     if (known) return known;
-    const note = readById(id);
-    if (!note || solving.has(id)) return undefined;
+    const note = solving.has(id) ? undefined : read(id);
+    if (!note) return undefined;
     solving.add(id);
     const result = solveNote(note, {
       foreignFigure: (other, name) => {
-        const tables = solveById(other)?.figureTables ?? [];
+        const tables = solve(other)?.figureTables ?? [];
         return tables.flatMap(({ results }) => results).find(({ figure }) => figure.name === name)?.nominal?.value;
       },
     });
@@ -84,9 +104,7 @@ export function buildSiteModel(folders: SiteFolders): SiteModel {
     solved.set(id, result);
     return result;
   };
-  const notes = ids.map((id) => solveById(id)!);
-  last = { notes };
-  return last;
+  return { solve };
 }
 
 function listNotes(folder: string): string[] {

@@ -1,0 +1,14 @@
+/** `npm run build`: the site into `_site`. Exit status 2 when a note has a problem; the other notes are built all the same. */
+import { join } from 'node:path';
+import { fromCaller, PROJECT_ROOT, readArguments } from './project.ts';
+import { buildSite, reportBuild } from './site-build.ts';
+
+const { values } = readArguments(process.argv.slice(2), {
+  values: ['output'],
+  files: 0,
+  usage: 'npm run build [-- --output DIR]',
+});
+const stated = values.get('output');
+process.chdir(PROJECT_ROOT);
+const output = stated === undefined ? join(PROJECT_ROOT, '_site') : fromCaller(stated);
+process.exitCode = reportBuild(await buildSite({ projectRoot: PROJECT_ROOT, output }));
