@@ -5,7 +5,7 @@ export default function configure(eleventyConfig: UserConfig): object {
   eleventyConfig.addPlugin(ohmfolio);
   eleventyConfig.addPassthroughCopy({ 'site/style.css': 'style.css' });
   return {
-    dir: { input: 'site/pages', layouts: '../layouts', includes: '../layouts', output: '_site' },
+    dir: { input: 'site/pages', layouts: '../layouts', includes: '../layouts' },
     htmlTemplateEngine: 'njk',
   };
 }

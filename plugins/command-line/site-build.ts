@@ -1,6 +1,6 @@
 /** Building the site, whole or not at all: into a temporary folder beside the output, which is swapped in at the end. */
 import { existsSync, mkdirSync, readdirSync, renameSync, rmSync } from 'node:fs';
-import { basename, dirname, join } from 'node:path';
+import { basename, dirname, join, relative } from 'node:path';
 import Eleventy from '@11ty/eleventy';
 import { formatProblem } from '../problems.ts';
 import { lastSiteModel, type SiteModel } from '../site-model.ts';
@@ -24,7 +24,7 @@ export async function buildSite(options: {
   rmSync(temporary, { recursive: true, force: true });
   mkdirSync(dirname(output), { recursive: true });
   try {
-    const eleventy = new Eleventy('site/pages', temporary, {
+    const eleventy = new Eleventy('site/pages', relative(projectRoot, temporary), {
       configPath: join(projectRoot, 'eleventy.config.ts'),
       quietMode: true,
     });
@@ -40,6 +40,7 @@ export async function buildSite(options: {
 
 function swapIn(built: string, output: string): void {
   const old = `${output}.old-${process.pid}`;
+  if (!existsSync(built)) throw new Error('Internal error: the build wrote nothing');
   if (existsSync(output)) renameSync(output, old);
   renameSync(built, output);
   rmSync(old, { recursive: true, force: true });

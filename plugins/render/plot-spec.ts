@@ -1,0 +1,183 @@
+/** A plot as a Vega-Lite specification, colours standing in for style sheet variables. */
+import type { Curve, SolvedPlot } from '../results.ts';
+import { curveName, drawnPoints } from './plot-data.ts';
+import { DASHES, SERIES_COUNT } from './plot-palette.ts';
+
+export const SCHEMA = 'https://vega.github.io/schema/vega-lite/v6.json';
+
+/** Colours that are put in before drawing and replaced by variables after: one that occurs nowhere else for each. */
+export const STAND_INS: { readonly [variable: string]: string } = {
+  '--plot-series-1': '#010a01',
+  '--plot-series-2': '#010a02',
+  '--plot-series-3': '#010a03',
+  '--plot-series-4': '#010a04',
+  '--plot-series-5': '#010a05',
+  '--plot-series-6': '#010a06',
+  '--plot-series-7': '#010a07',
+  '--plot-series-8': '#010a08',
+  '--plot-text': '#010b01',
+  '--plot-axis': '#010b02',
+  '--plot-grid': '#010b03',
+  '--plot-span': '#010b04',
+};
+
+const FONT = 'Seravek, "Segoe UI", "Noto Sans", "Liberation Sans", Arial, sans-serif';
+
+const QUANTITIES: { readonly [unit: string]: string } = {
+  V: 'voltage',
+  A: 'current',
+  W: 'power',
+  C: 'charge',
+  J: 'energy',
+  Ω: 'resistance',
+  Wb: 'flux',
+  s: 'time',
+  Hz: 'frequency',
+};
+
+export type Json = { readonly [key: string]: unknown };
+
+export function plotSpecification(plot: SolvedPlot): Json {
+  const names = uniqueNames(plot.curves);
+  const left = plot.curves.filter(({ side }) => side === 'left');
+  const right = plot.curves.filter(({ side }) => side === 'right');
+  const colour = {
+    field: 'series',
+    type: 'nominal',
+    scale: { domain: names, range: names.map((_, k) => STAND_INS[`--plot-series-${(k % SERIES_COUNT) + 1}`]) },
+    legend: names.length > 1 ? { title: null } : null,
+  };
+  const dash = {
+    field: 'series',
+    type: 'nominal',
+    scale: { domain: names, range: names.map((_, k) => DASHES[k % DASHES.length]) },
+    legend: names.length > 1 ? { title: null } : null,
+  };
+  const horizontal = {
+    field: 'x',
+    type: 'quantitative',
+    scale: { zero: false, nice: false },
+    axis: { title: axisTitle(plot.horizontal.label, plot.horizontal.unit), grid: true },
+  };
+  const lines = (curves: readonly Curve[], orient: 'left' | 'right'): Json => ({
+    data: {
+      values: curves.flatMap((curve) =>
+        drawnPoints(curve, plot).map(({ x, y }, order) => ({ x, y, series: names[plot.curves.indexOf(curve)], order })),
+      ),
+    },
+    mark: { type: 'line', strokeWidth: 1.6, strokeJoin: 'round', invalid: 'break-paths-filter-domains' },
+    encoding: {
+      x: horizontal,
+      y: {
+        field: 'y',
+        type: 'quantitative',
+        scale: { zero: false },
+        axis: {
+          orient,
+          title: axisTitle(quantityOf(curves), curves[0]!.unit),
+          grid: orient === 'left' || left.length === 0,
+        },
+      },
+      color: colour,
+      strokeDash: dash,
+      order: { field: 'order', type: 'quantitative' },
+    },
+  });
+  const layers: Json[] = [];
+  if (plot.spans.length > 0) layers.push(...spanLayers(plot));
+  if (left.length > 0) layers.push(lines(left, 'left'));
+  if (right.length > 0) layers.push(lines(right, 'right'));
+  return {
+    $schema: SCHEMA,
+    ...(plot.block.title === undefined ? {} : { description: plot.block.title }),
+    width: 620,
+    height: 260,
+    background: null,
+    layer: layers,
+    resolve: left.length > 0 && right.length > 0 ? { scale: { y: 'independent' } } : {},
+    config: CONFIG,
+  };
+}
+
+const CONFIG: Json = {
+  font: FONT,
+  view: { stroke: null },
+  axis: {
+    labelFontSize: 11,
+    titleFontSize: 11.5,
+    titleFontWeight: 'normal',
+    labelColor: STAND_INS['--plot-text'],
+    titleColor: STAND_INS['--plot-text'],
+    domainColor: STAND_INS['--plot-axis'],
+    tickColor: STAND_INS['--plot-axis'],
+    gridColor: STAND_INS['--plot-grid'],
+    titleLimit: 0,
+    labelLimit: 0,
+    tickCount: 7,
+  },
+  legend: {
+    orient: 'bottom',
+    columns: 3,
+    symbolType: 'stroke',
+    symbolSize: 320,
+    symbolStrokeWidth: 1.8,
+    labelFontSize: 11.5,
+    labelColor: STAND_INS['--plot-text'],
+    labelLimit: 0,
+    titleLimit: 0,
+    offset: 6,
+  },
+};
+
+/** Stretches where a mark's condition holds, shaded over the whole height, the label written once a kind. */
+function spanLayers(plot: SolvedPlot): Json[] {
+  const scale = plot.horizontal.scale;
+  const values = plot.spans.map(({ label, from, to }) => ({ from: from * scale, to: to * scale, label }));
+  const firsts = values.filter(({ label }, k) => values.findIndex((other) => other.label === label) === k);
+  return [
+    {
+      data: { values },
+      mark: { type: 'rect', color: STAND_INS['--plot-span'] },
+      encoding: { x: { field: 'from', type: 'quantitative' }, x2: { field: 'to' } },
+    },
+    {
+      data: { values: firsts.map((span, k) => ({ ...span, row: 4 + 13 * k, middle: (span.from + span.to) / 2 })) },
+      mark: {
+        type: 'text',
+        baseline: 'top',
+        align: 'center',
+        fontSize: 10.5,
+        color: STAND_INS['--plot-text'],
+        font: FONT,
+      },
+      encoding: {
+        x: { field: 'middle', type: 'quantitative' },
+        y: { field: 'row', type: 'quantitative', scale: null },
+        text: { field: 'label', type: 'nominal' },
+      },
+    },
+  ];
+}
+
+/** The form of ISO 80000-1: a quantity divided by its unit. */
+function axisTitle(quantity: string, unit: string): string {
+  return unit === '' ? quantity : `${quantity} / ${unit}`;
+}
+
+/** What the curves of an axis share: the label of a single one, else the quantity that their unit measures. */
+function quantityOf(curves: readonly Curve[]): string {
+  const labels = new Set(curves.map(({ label }) => label));
+  if (labels.size === 1) return [...labels][0]!;
+  const unit = curves[0]!.unit.replace(/^[TGMkmµnpfa](?=[A-ZΩ])/, '');
+  return QUANTITIES[unit] ?? 'value';
+}
+
+export function uniqueNames(curves: readonly Curve[]): string[] {
+  const seen = new Map<string, number>();
+  return curves.map((curve) => {
+    const name = curveName(curve);
+    const count = (seen.get(name) ?? 0) + 1;
+    seen.set(name, count);
+    return count === 1 ? name : `${name} (${count})`;
+  });
+}

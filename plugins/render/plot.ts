@@ -1,0 +1,120 @@
+/** A plot rendered: an SVG whose colours follow the page, the specification it was drawn from, and its values. */
+import * as vega from 'vega';
+import { compile, type TopLevelSpec } from 'vega-lite';
+import type { SolvedPlot } from '../results.ts';
+import { escapeHtml } from './html.ts';
+import { curveName, drawnPoints, plotCsv, shortNumber, type ValueTable, valueTable } from './plot-data.ts';
+import { mergeAuthorSpecification } from './plot-merge.ts';
+import { PLOT_PALETTE } from './plot-palette.ts';
+import { type Json, plotSpecification, STAND_INS } from './plot-spec.ts';
+
+export interface RenderedPlot {
+  readonly svg: string;
+  /** Vega-Lite, with the colours of a light page. */
+  readonly spec: Json;
+  readonly csv: string;
+  readonly description: string;
+  readonly warnings: readonly string[];
+  readonly table: ValueTable;
+}
+
+/** `id` is unique in the page: all ids of the drawing begin with it. */
+export async function renderPlot(
+  plot: SolvedPlot,
+  options: { readonly id: string; readonly noteId: string },
+): Promise<RenderedPlot> {
+  const warnings: string[] = [];
+  const own = plotSpecification(plot);
+  const specification = plot.block.vega ? mergeAuthorSpecification(own, plot.block.vega, warnings) : own;
+  const description = describe(plot);
+  const drawing = await draw(specification, warnings);
+  const title = plot.block.title ?? 'Plot';
+  return {
+    svg: dress(drawing, options.id, title, description),
+    spec: JSON.parse(withColours(JSON.stringify(specification), (variable) => PLOT_PALETTE[variable]!.light)) as Json,
+    csv: plotCsv(plot),
+    description,
+    warnings,
+    table: valueTable(plot),
+  };
+}
+
+async function draw(specification: Json, warnings: string[]): Promise<string> {
+  const logger = {
+    level: () => logger,
+    error: (...words: unknown[]) => note(words),
+    warn: (...words: unknown[]) => note(words),
+    info: () => logger,
+    debug: () => logger,
+  };
+  function note(words: readonly unknown[]): typeof logger {
+    warnings.push(words.map(String).join(' '));
+    return logger;
+  }
+  const compiled = compile(specification as unknown as TopLevelSpec, { logger: logger as never });
+  // numbering starts anew for each drawing, so that the same plot is the same bytes
+  vega.resetSVGDefIds();
+  const view = new vega.View(vega.parse(compiled.spec), {
+    renderer: 'none',
+    logger: logger as never,
+    loader: NOTHING as never,
+  });
+  try {
+    return await view.toSVG();
+  } finally {
+    view.finalize();
+  }
+}
+
+/** Whatever a specification asks for, nothing is loaded. */
+const NOTHING = {
+  load: () => Promise.reject(new Error('a plot loads nothing')),
+  sanitize: () => Promise.reject(new Error('a plot opens nothing')),
+  http: () => Promise.reject(new Error('a plot loads nothing')),
+  file: () => Promise.reject(new Error('a plot loads nothing')),
+};
+
+/** Makes the drawing part of a page: its own ids, the page's colours, a title and a description for those who do not see it. */
+function dress(svg: string, id: string, title: string, description: string): string {
+  const size = /viewBox="0 0 ([\d.]+) ([\d.]+)"/.exec(svg);
+  const width = size ? Math.ceil(Number(size[1])) : 700;
+  const height = size ? Math.ceil(Number(size[2])) : 320;
+  const inner = svg
+    .replace(/^<svg[^>]*>/, '')
+    .replace(/(\bid=")([^"]*")/g, `$1${id}-$2`)
+    .replace(/url\(#([^)]*)\)/g, `url(#${id}-$1)`)
+    .replace(/(href="#)([^"]*")/g, `$1${id}-$2`)
+    // roles and labels of the parts would be read out one by one: the description says it in a sentence
+    .replace(/ (role|aria-[a-z]+)="[^"]*"/g, '');
+  const coloured = withColours(inner, (variable) => `var(${variable})`);
+  return (
+    `<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 ${width} ${height}" width="${width}" height="${height}" role="img" aria-labelledby="${id}-title ${id}-desc">` +
+    `<title id="${id}-title">${escapeHtml(title)}</title><desc id="${id}-desc">${escapeHtml(description)}</desc>${coloured}`
+  );
+}
+
+function withColours(text: string, replacement: (variable: string) => string): string {
+  let result = text;
+  for (const [variable, standIn] of Object.entries(STAND_INS))
+    result = result.replaceAll(standIn, replacement(variable));
+  return result;
+}
+
+function describe(plot: SolvedPlot): string {
+  const ranges = plot.curves.map((curve) => {
+    let least = Number.POSITIVE_INFINITY;
+    let greatest = Number.NEGATIVE_INFINITY;
+    for (const { y } of drawnPoints(curve, plot)) {
+      if (y === null) continue;
+      least = Math.min(least, y);
+      greatest = Math.max(greatest, y);
+    }
+    const unit = curve.unit === '' ? '' : ` ${curve.unit}`;
+    return `${curveName(curve)} from ${shortNumber(least)}${unit} to ${shortNumber(greatest)}${unit}`;
+  });
+  const marks = [...new Set(plot.spans.map(({ label }) => label))];
+  return (
+    `${plot.curves.length === 1 ? 'A curve' : `${plot.curves.length} curves`} over ${plot.horizontal.label}: ${ranges.join('; ')}.` +
+    (marks.length > 0 ? ` Shaded: ${marks.join(', ')}.` : '')
+  );
+}
