@@ -147,9 +147,12 @@ function readCurrent(reader: Reader, component: Component, voltage: () => Float6
       const capacitance = storageOf(reader, component, 'capacitor');
       if (!isOverTime(solution.request)) return voltage().fill(0);
       const current = derivativeAtNodes(solution.grid, voltage()).map((value) => capacitance * value);
-      // extrapolated from the stages to the start of the step it is of low order; where nothing jumps, the step before knows it better
+      // extrapolated from the stages to the start of the step it is of low order: what else flows into its node, or, where
+      // nothing jumps, the step before knows it better
+      const balance = currentByBalance(reader, component);
       smoothStarts(solution, system).forEach((smooth, step) => {
-        if (smooth) current[4 * step] = current[4 * step - 1]!;
+        if (balance) current[4 * step] = balance[4 * step]!;
+        else if (smooth) current[4 * step] = current[4 * step - 1]!;
       });
       return current;
     }
@@ -178,18 +181,36 @@ function readCurrent(reader: Reader, component: Component, voltage: () => Float6
   }
 }
 
+/** A capacitor's current by Kirchhoff's law at one of its nodes, where no other capacitor and no source that fixes the node's potential stands. */
+function currentByBalance(reader: Reader, capacitor: Component): Float64Array | undefined {
+  const { components } = reader.solution.circuit;
+  for (const [node, other] of [capacitor.nodes, [...capacitor.nodes].reverse()]) {
+    const index = reader.system.nodeIndex.get(node!);
+    if (node === other || node === REFERENCE_NODE || index === undefined || index >= reader.system.size) continue;
+    const rest = components.filter((component) => component !== capacitor && component.nodes.includes(node!));
+    if (rest.some(({ kind }) => kind === 'capacitor')) continue;
+    return sumIntoNode(reader, node!, rest).map((value) => (node === capacitor.nodes[0] ? -value : value));
+  }
+  return undefined;
+}
+
 /** The current of a source that fixes a node's potential: what the node's other components do not carry away. */
 function currentFromNode(reader: Reader, source: Component): Float64Array {
   const { solution, system } = reader;
   const driven = system.driven.find(({ designator }) => designator === source.designator)!;
   const node = source.nodes[driven.sign === 1 ? 0 : 1];
-  const sum = new Float64Array(axisValues(solution.grid).length);
-  for (const other of solution.circuit.components) {
-    if (other === source) continue;
-    const sign = (other.nodes[0] === node ? 1 : 0) - (other.nodes[1] === node ? 1 : 0);
+  const others = solution.circuit.components.filter((other) => other !== source);
+  return sumIntoNode(reader, node, others).map((value) => -driven.sign * value);
+}
+
+/** The sum of the currents that flow from the node into the components. */
+function sumIntoNode(reader: Reader, node: string, components: readonly Component[]): Float64Array {
+  const sum = new Float64Array(4 * (reader.solution.grid.length - 1 || 1));
+  for (const component of components) {
+    const sign = (component.nodes[0] === node ? 1 : 0) - (component.nodes[1] === node ? 1 : 0);
     if (sign === 0) continue;
-    const current = readProperty(reader, other, 'i');
-    for (let k = 0; k < sum.length; k++) sum[k]! -= sign * driven.sign * current[k]!;
+    const current = readProperty(reader, component, 'i');
+    for (let k = 0; k < sum.length; k++) sum[k]! += sign * current[k]!;
   }
   return sum;
 }
