@@ -15,7 +15,7 @@ export function renderCircuit(block: CircuitBlock): string {
     return `<tr id="component-${id}"><th scope="row">${escapeHtml(designator)}</th>${cells.map((cell) => `<td>${cell}</td>`).join('')}</tr>`;
   });
   return (
-    `<div class="table-scroll" role="region" aria-label="${caption}" tabindex="0"><table class="components"><caption>${caption}</caption>` +
+    `<div class="table-scroll" role="group" aria-label="${caption}" tabindex="0"><table class="components"><caption>${caption}</caption>` +
     '<thead><tr><th scope="col">Component</th><th scope="col">Kind</th><th scope="col">Value</th><th scope="col">Between</th></tr></thead>' +
     `<tbody>${rows.join('')}</tbody></table></div>`
   );

@@ -29,11 +29,9 @@ export function renderFigureTable(table: FigureTable): string {
     const measured = pick(result);
     return measured ? numberText(measured, unit, result.figure.digits) : '–';
   };
-  if (has(({ minimum }) => minimum !== undefined)) {
-    columns.push({ head: 'Minimum', cell: number(({ minimum }) => minimum), number: true });
-    columns.push({ head: 'Typical', cell: number(({ nominal }) => nominal), number: true });
-    columns.push({ head: 'Maximum', cell: number(({ maximum }) => maximum), number: true });
-  } else columns.push({ head: 'Value', cell: number(({ nominal }) => nominal), number: true });
+  columns.push({ head: 'Minimum', cell: number(({ minimum }) => minimum), number: true });
+  columns.push({ head: 'Typical', cell: number(({ nominal }) => nominal), number: true });
+  columns.push({ head: 'Maximum', cell: number(({ maximum }) => maximum), number: true });
   columns.push({ head: 'Unit', cell: (_, unit) => escapeHtml(unit.text) });
   if (has(({ figure }) => figure.must !== undefined)) {
     columns.push({ head: 'Limit', cell: (result, unit) => escapeHtml(limitOf(result, unit)) });
@@ -61,7 +59,7 @@ export function renderFigureTable(table: FigureTable): string {
     return `<tr id="figure-${slug(figure.name)}">${cells.join('')}</tr>`;
   });
   return (
-    `<div class="table-scroll" role="region" aria-label="${caption}" tabindex="0"><table class="figures"><caption>${caption}${under}</caption>` +
+    `<div class="table-scroll" role="group" aria-label="${caption}" tabindex="0"><table class="figures"><caption>${caption}${under}</caption>` +
     `<thead><tr>${head}</tr></thead><tbody>${rows.join('')}</tbody></table></div>`
   );
 }

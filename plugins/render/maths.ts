@@ -9,7 +9,7 @@ export function mathsPlugin(markdown: MarkdownIt): void {
   markdown.block.ruler.before('fence', 'maths', blockRule, { alt: ['paragraph', 'blockquote', 'list'] });
   markdown.renderer.rules.maths_inline = (tokens, index) => toMathML(tokens[index]!.content, false);
   markdown.renderer.rules.maths_block = (tokens, index) =>
-    `<div class="maths" role="region" aria-label="Formula" tabindex="0">${toMathML(tokens[index]!.content, true)}</div>\n`;
+    `<div class="maths" role="group" aria-label="Formula" tabindex="0">${toMathML(tokens[index]!.content, true)}</div>\n`;
 }
 
 function toMathML(tex: string, displayMode: boolean): string {

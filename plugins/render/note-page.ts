@@ -130,7 +130,7 @@ function createMarkdown(): MarkdownIt {
     if (token.tag === 'h2') env.headings.push({ id, text });
     return self.renderToken(tokens, index, options);
   };
-  rules.table_open = () => '<div class="table-scroll" role="region" aria-label="Table" tabindex="0"><table>\n';
+  rules.table_open = () => '<div class="table-scroll" role="group" aria-label="Table" tabindex="0"><table>\n';
   rules.table_close = () => '</table></div>\n';
   markdown = parser;
   return parser;
@@ -151,12 +151,12 @@ function plotFigure(
   const rows = plot.table.rows
     .map((row) => `<tr>${row.map((cell) => `<td class="number">${escapeHtml(cell)}</td>`).join('')}</tr>`)
     .join('');
-  const words = [title, caption].filter((text) => text !== undefined).map((text) => escapeHtml(text));
+  const heading = title === undefined ? '' : `<span class="plot-title">${escapeHtml(title)}.</span> `;
   return (
     `<figure class="plot" id="plot-${name}">${plot.svg}` +
-    `<figcaption>${words.length > 0 ? `<span class="plot-title">${words.join('. ')}</span>` : ''}` +
+    `<figcaption><span>${heading}${escapeHtml(caption ?? '')}</span>` +
     `<span class="downloads"><a href="${folder}/${name}.csv" download>Data (CSV)</a> <a href="${folder}/${name}.json" download>Specification (Vega-Lite)</a></span></figcaption>` +
-    `<details><summary>Values</summary><div class="table-scroll" role="region" aria-label="Values of the plot" tabindex="0"><table><thead><tr>${head}</tr></thead><tbody>${rows}</tbody></table></div></details></figure>`
+    `<details><summary>Values</summary><div class="table-scroll" role="group" aria-label="Values of the plot" tabindex="0"><table><thead><tr>${head}</tr></thead><tbody>${rows}</tbody></table></div></details></figure>`
   );
 }
 

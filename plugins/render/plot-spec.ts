@@ -133,7 +133,15 @@ const CONFIG: Json = {
 function spanLayers(plot: SolvedPlot): Json[] {
   const scale = plot.horizontal.scale;
   const values = plot.spans.map(({ label, from, to }) => ({ from: from * scale, to: to * scale, label }));
-  const firsts = values.filter(({ label }, k) => values.findIndex((other) => other.label === label) === k);
+  const from = Math.min(...plot.curves.map(({ waveform }) => waveform.grid[0]! * scale));
+  const to = Math.max(...plot.curves.map(({ waveform }) => waveform.grid.at(-1)! * scale));
+  // of each kind, the stretch that lies furthest from the ends has room for its label
+  const room = (span: { readonly from: number; readonly to: number }): number =>
+    Math.min((span.from + span.to) / 2 - from, to - (span.from + span.to) / 2);
+  const labels = [...new Set(values.map(({ label }) => label))];
+  const firsts = labels.map((label) =>
+    values.filter((span) => span.label === label).reduce((best, span) => (room(span) > room(best) ? span : best)),
+  );
   return [
     {
       data: { values },
