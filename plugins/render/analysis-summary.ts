@@ -1,9 +1,10 @@
 /** What an analysis block asked for and how it was solved. */
 import { ZERO_CELSIUS } from '../../solver/circuit.ts';
-import { TIME } from '../language/dimensions.ts';
-import { formatQuantity } from '../language/format.ts';
+import { CURRENT, TIME, VOLTAGE } from '../language/dimensions.ts';
+import { fittingUnit, formatQuantity } from '../language/format.ts';
 import type { SolvedAnalysis } from '../results.ts';
 import { escapeHtml } from './html.ts';
+import { typographic } from './number-text.ts';
 
 export function renderAnalysis({ block, runs }: SolvedAnalysis): string {
   const sentence = `${describe({ block, runs })}.`;
@@ -30,6 +31,20 @@ export function renderAnalysis({ block, runs }: SolvedAnalysis): string {
   );
 }
 
+/** The swept range in the source's unit. */
+function sweptRange(
+  request: { readonly sweep: string; readonly from: number; readonly to: number },
+  run: SolvedAnalysis['runs'][number],
+): string {
+  const source = run.solution.circuit.components.find(({ designator }) => designator === request.sweep);
+  const unit = fittingUnit(
+    source?.kind === 'current-source' ? CURRENT : VOLTAGE,
+    Math.max(Math.abs(request.from), Math.abs(request.to)),
+  );
+  const text = (value: number): string => typographic(String(Number((value / unit.factor).toPrecision(6))));
+  return `${text(request.from)} to ${text(request.to)}\u00a0${unit.text}`;
+}
+
 function describe({ block, runs }: SolvedAnalysis): string {
   const { request } = block;
   const parts = [`${request.find} of ${block.circuit}`];
@@ -47,10 +62,7 @@ function describe({ block, runs }: SolvedAnalysis): string {
           : `from ${Object.keys(request.start).join(', ')} as stated`,
     );
   }
-  if (request.find === 'characteristic')
-    parts.push(
-      `${request.sweep} swept from ${Number(request.from.toPrecision(6))} to ${Number(request.to.toPrecision(6))}`,
-    );
+  if (request.find === 'characteristic') parts.push(`${request.sweep} swept from ${sweptRange(request, runs[0]!)}`);
   if (block.temperatures.length > 0) {
     parts.push(`at ${block.temperatures.map((kelvin) => Number((kelvin - ZERO_CELSIUS).toFixed(6))).join(', ')} °C`);
   }

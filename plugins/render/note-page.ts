@@ -153,7 +153,7 @@ function plotFigure(
     .join('');
   const heading = title === undefined ? '' : `<span class="plot-title">${escapeHtml(title)}.</span> `;
   return (
-    `<figure class="plot" id="plot-${name}">${plot.svg}` +
+    `<figure class="plot" id="plot-${name}"><div class="plot-scroll" role="group" aria-label="Plot" tabindex="0">${plot.svg}</div>` +
     `<figcaption><span>${heading}${escapeHtml(caption ?? '')}</span>` +
     `<span class="downloads"><a href="${folder}/${name}.csv" download>Data (CSV)</a> <a href="${folder}/${name}.json" download>Specification (Vega-Lite)</a></span></figcaption>` +
     `<details><summary>Values</summary><div class="table-scroll" role="group" aria-label="Values of the plot" tabindex="0"><table><thead><tr>${head}</tr></thead><tbody>${rows}</tbody></table></div></details></figure>`

@@ -95,9 +95,28 @@ export function plotSpecification(plot: SolvedPlot): Json {
     background: null,
     layer: layers,
     resolve: left.length > 0 && right.length > 0 ? { scale: { y: 'independent' } } : {},
-    config: CONFIG,
+    config: configFor(names),
   };
 }
+
+/** As many columns of the legend as its longest label leaves room for. */
+function configFor(names: readonly string[]): Json {
+  const longest = Math.max(...names.map((name) => name.length));
+  const columns = longest > 44 ? 1 : longest > 24 ? 2 : 3;
+  return { ...CONFIG, legend: { ...LEGEND, columns } };
+}
+
+const LEGEND: Json = {
+  orient: 'bottom',
+  symbolType: 'stroke',
+  symbolSize: 320,
+  symbolStrokeWidth: 1.8,
+  labelFontSize: 11.5,
+  labelColor: STAND_INS['--plot-text'],
+  labelLimit: 0,
+  titleLimit: 0,
+  offset: 6,
+};
 
 const CONFIG: Json = {
   font: FONT,
@@ -114,18 +133,6 @@ const CONFIG: Json = {
     titleLimit: 0,
     labelLimit: 0,
     tickCount: 7,
-  },
-  legend: {
-    orient: 'bottom',
-    columns: 3,
-    symbolType: 'stroke',
-    symbolSize: 320,
-    symbolStrokeWidth: 1.8,
-    labelFontSize: 11.5,
-    labelColor: STAND_INS['--plot-text'],
-    labelLimit: 0,
-    titleLimit: 0,
-    offset: 6,
   },
 };
 

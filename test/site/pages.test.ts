@@ -153,7 +153,7 @@ describe.skipIf(browserPath === undefined)('pages in a browser', () => {
   it('plots are visible without scripts, with title and description', async () => {
     for (const name of notes) {
       const { page, context } = await visit(new URL(name, address).href, { javaScriptEnabled: false });
-      const plots = page.locator('figure.plot > svg');
+      const plots = page.locator('figure.plot svg');
       const count = await plots.count();
       for (let k = 0; k < count; k++) {
         const plot = plots.nth(k);
