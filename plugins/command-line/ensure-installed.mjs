@@ -1,6 +1,6 @@
 // Run by npm before each command: installs the locked packages when what is there does not fit the lock file, Node and this machine. Plain JavaScript
 // without dependencies. With `--browser`, also sees to a browser for the tests.
-import { spawnSync } from 'node:child_process';
+import { spawn, spawnSync } from 'node:child_process';
 import { createHash } from 'node:crypto';
 import { existsSync, mkdirSync, readFileSync, rmSync, statSync, writeFileSync } from 'node:fs';
 import { dirname, join, resolve } from 'node:path';
@@ -12,11 +12,11 @@ const modules = join(root, 'node_modules');
 const stampFile = join(modules, '.ohmfolio-installed');
 const lockFolder = join(root, '.cache', 'installing');
 
-/** An install that has not ended after this many milliseconds has died. */
-const STALE = 15 * 60 * 1000;
+/** A lock without an owner's number is this many milliseconds old before it is taken to be left over. */
+const GRACE = 5000;
 
 if (process.argv[1] && resolve(process.argv[1]) === fileURLToPath(import.meta.url)) {
-  installPackages();
+  await installPackages();
   if (process.argv.includes('--browser')) installBrowser();
 }
 
@@ -25,7 +25,7 @@ export function stampOf(lockFile, nodeVersion, platform) {
   return createHash('sha256').update(lockFile).update(`\n${nodeVersion}\n${platform}`).digest('hex');
 }
 
-function installPackages() {
+async function installPackages() {
   const stamp = stampOf(
     readFileSync(join(root, 'package-lock.json')),
     process.version,
@@ -33,43 +33,70 @@ function installPackages() {
   );
   const installed = () => existsSync(stampFile) && readFileSync(stampFile, 'utf8') === stamp;
   if (installed()) return;
-  waitForTurn(installed);
-  if (installed()) return;
-  try {
-    console.error('Installing packages (once; a later run does not) ...');
-    rmSync(stampFile, { force: true });
-    const npm = process.env.npm_execpath;
-    const [command, ...first] = npm ? [process.execPath, npm] : [process.platform === 'win32' ? 'npm.cmd' : 'npm'];
-    const run = spawnSync(command, [...first, 'ci', '--no-audit', '--no-fund', '--loglevel=error'], {
+  const mine = takeTurn(installed);
+  if (installed()) {
+    if (mine) leaveTurn();
+    return;
+  }
+  console.error('Installing packages (once; a later run does not) ...');
+  // without its stamp an installation counts as none: one that is interrupted is done again
+  rmSync(stampFile, { force: true });
+  const npm = process.env.npm_execpath;
+  const [command, ...first] = npm ? [process.execPath, npm] : [process.platform === 'win32' ? 'npm.cmd' : 'npm'];
+  const reason = await new Promise((done) => {
+    const child = spawn(command, [...first, 'ci', '--no-audit', '--no-fund', '--loglevel=error'], {
       cwd: root,
       stdio: ['ignore', 2, 2],
+      shell: !npm && process.platform === 'win32',
     });
-    if (run.status !== 0) {
-      console.error(
-        `The packages could not be installed: npm ci ended with ${run.status ?? run.error?.message}. Check the connection to the package registry and run the command again.`,
-      );
-      process.exitCode = 1;
-      process.exit(1);
+    // npm outlives a killed parent: the turn is npm's too
+    if (child.pid) writeFileSync(join(lockFolder, 'processes'), `${process.pid} ${child.pid}`);
+    child.on('error', (error) => done(`could not be started (${error.message})`));
+    child.on('exit', (status, signal) => done(status === 0 ? '' : `ended with ${signal ?? `status ${status}`}`));
+  });
+  if (reason === '') writeFileSync(stampFile, stamp);
+  leaveTurn();
+  if (reason === '') return;
+  console.error(
+    `The packages could not be installed: npm ci ${reason}. Check the connection to the package registry, then run the command again.`,
+  );
+  process.exit(1);
+}
+
+/** Making a folder is atomic: whoever makes it installs, the others wait, unless its maker is gone. False: no turn was needed. */
+function takeTurn(done) {
+  const owners = join(lockFolder, 'processes');
+  for (;;) {
+    mkdirSync(dirname(lockFolder), { recursive: true });
+    try {
+      mkdirSync(lockFolder);
+      writeFileSync(owners, String(process.pid));
+      return true;
+    } catch (error) {
+      if (error.code !== 'EEXIST') throw error;
     }
-    writeFileSync(stampFile, stamp);
-  } finally {
-    rmSync(lockFolder, { recursive: true, force: true });
+    if (done()) return false;
+    if (isLeftOver(owners)) leaveTurn();
+    else Atomics.wait(new Int32Array(new SharedArrayBuffer(4)), 0, 0, 200);
   }
 }
 
-/** Making a folder is atomic: whoever makes it installs, the others wait. */
-function waitForTurn(done) {
-  for (;;) {
-    try {
-      mkdirSync(dirname(lockFolder), { recursive: true });
-      mkdirSync(lockFolder);
-      return;
-    } catch {
-      if (done()) return;
-      const age = existsSync(lockFolder) ? Date.now() - statSync(lockFolder).mtimeMs : 0;
-      if (age > STALE) rmSync(lockFolder, { recursive: true, force: true });
-      Atomics.wait(new Int32Array(new SharedArrayBuffer(4)), 0, 0, 500);
-    }
+function leaveTurn() {
+  rmSync(lockFolder, { recursive: true, force: true });
+}
+
+/** Whether all who held the lock are gone. */
+function isLeftOver(owners) {
+  if (!existsSync(owners)) return Date.now() - (statSync(lockFolder, { throwIfNoEntry: false })?.mtimeMs ?? 0) > GRACE;
+  return !readFileSync(owners, 'utf8').split(' ').some(isRunning);
+}
+
+function isRunning(pid) {
+  try {
+    process.kill(Number(pid), 0);
+    return true;
+  } catch (error) {
+    return error.code === 'EPERM';
   }
 }
 
