@@ -2,8 +2,9 @@
  * The lamp circuit for a general-purpose library of explicit methods (odex, extrapolation of the midpoint rule after E. Hairer and G. Wanner): one
  * differential equation for the capacitor's voltage, the current of the loop solved for by bisection and Newton steps of its own.
  */
-import odex from 'odex';
+
 import { waveCorners, waveValue } from '../../solver/wave-evaluation.ts';
+import odex from '../odex.ts';
 import {
   type LampCase,
   LED_RESISTANCE,

@@ -33,7 +33,10 @@ export function benchIntegratorChoice(report: Report): void {
     }
   }
   const records = runPeer('ida', 0.01);
-  if (typeof records === 'string') return report.remark(records);
+  if (typeof records === 'string') {
+    report.remark(records);
+    return;
+  }
   for (const record of records) {
     if (record.peer !== 'ida-dense-nodal' || !record.w.startsWith('W1')) continue;
     report.record({

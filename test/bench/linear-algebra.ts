@@ -75,7 +75,10 @@ export function benchLinearAlgebra(report: Report): void {
     });
   }
   const records = runPeer('linear', 0.06);
-  if (typeof records === 'string') return report.remark(records);
+  if (typeof records === 'string') {
+    report.remark(records);
+    return;
+  }
   const peer = new Map<string, number>();
   for (const record of records) {
     if (record.w !== 'W8' || (record.step !== 'refactor' && record.step !== 'solve')) continue;

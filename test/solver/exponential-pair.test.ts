@@ -1,5 +1,5 @@
 /** Source, resistor, capacitor and an antiparallel pair of exponential diodes: test/references/10, and an independent integrator. */
-import odex from 'odex';
+import odex from '../odex.ts';
 import { describe, expect, test } from 'vitest';
 import type { Component } from '../../solver/circuit.ts';
 import { extremes } from '../../solver/waveform/extremes.ts';

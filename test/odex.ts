@@ -1,4 +1,9 @@
-/** The part of odex that the tests use: the package's own TypeScript sources do not pass this project's settings. */
+/**
+ * odex (extrapolation methods after E. Hairer and G. Wanner), as far as it is used here. It is required, not imported: the compiler would otherwise
+ * check the package's own TypeScript sources, which do not pass this project's settings.
+ */
+import { createRequire } from 'node:module';
+
 interface Solver {
   maxSteps: number;
   initialStepSize: number;
@@ -21,9 +26,11 @@ interface Solver {
   ): { y: number[]; outcome: number; nStep: number; xEnd: number; nAccept: number; nReject: number; nEval: number };
 }
 
-declare const odex: {
-  Solver: new (size: number) => Solver;
-  Outcome: { Converged: number; MaxStepsExceeded: number; EarlyReturn: number };
-};
+interface Odex {
+  readonly Solver: new (size: number) => Solver;
+  readonly Outcome: { readonly Converged: number; readonly MaxStepsExceeded: number; readonly EarlyReturn: number };
+}
+
+const odex = createRequire(import.meta.url)('odex') as Odex;
 
 export default odex;
