@@ -388,8 +388,9 @@ function errorNorm(march: March, h: number): number {
  */
 function lawMismatch(march: March): number {
   const { system, stepper, y, tolerance } = march;
-  const [z1, z2, z3] = stepper.z;
-  const [w0, w1, w2, w3] = CHECK_WEIGHTS;
+  const z1 = stepper.z[0];
+  const z2 = stepper.z[1];
+  const z3 = stepper.z[2];
   let worst = 0;
   for (let k = 0; k < system.laws.length; k++) {
     const { first, second, evaluate } = system.laws[k]!;
@@ -418,7 +419,7 @@ function lawMismatch(march: March): number {
 const lawResult = new Float64Array(2);
 
 /** Lagrange weights of the step's four nodes at 0.4 of it, between the two inner nodes. */
-const CHECK_WEIGHTS = lagrangeWeights(0.4);
+const [w0, w1, w2, w3] = lagrangeWeights(0.4);
 
 /** Dense output need not be better than the figures: its error does not add up. */
 const OUTPUT_FRACTION = 0.3;

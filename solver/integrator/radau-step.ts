@@ -16,6 +16,11 @@ import { evaluateSegment } from '../wave-evaluation.ts';
 import { solveStagesFully } from './coupled-stages.ts';
 import { ALPHA, BETA, C1, C2, ERROR_WEIGHTS, GAMMA, T, T_INVERSE } from './radau-coefficients.ts';
 
+// taken apart once, not in the innermost loop
+const [[t11, t12, t13], [t21, t22, t23], [t31]] = T;
+const [[i11, i12, i13], [i21, i22, i23], [i31, i32, i33]] = T_INVERSE;
+const [e1, e2, e3] = ERROR_WEIGHTS;
+
 const MAXIMUM_ITERATIONS = 10;
 
 /** Remaining error after a second iteration, as a fraction of its update, at least. */
@@ -146,7 +151,9 @@ export function solveStagesRobustly(stepper: Stepper, t: number, h: number, y: F
 
 /** Increments from the collocation polynomial of the step before, continued (section IV.8, equation 8.5). */
 function predict(stepper: Stepper, h: number): void {
-  const [z1, z2, z3] = stepper.z;
+  const z1 = stepper.z[0];
+  const z2 = stepper.z[1];
+  const z3 = stepper.z[2];
   const n = stepper.system.size;
   if (stepper.previousStep === 0) {
     z1.fill(0);
@@ -237,16 +244,24 @@ function factoriseStages(stepper: Stepper, h: number): boolean {
 
 function iterate(stepper: Stepper, h: number, y: Float64Array): boolean {
   const { system, z, memory, effort, weight } = stepper;
-  const [z1, z2, z3] = z;
-  const [w1, w2, w3] = memory.w;
-  const [r1, r2, r3] = memory.right;
-  const [f1, f2, f3] = memory.f;
-  const [s1, s2, s3] = memory.stored;
+  const z1 = z[0];
+  const z2 = z[1];
+  const z3 = z[2];
+  const w1 = memory.w[0];
+  const w2 = memory.w[1];
+  const w3 = memory.w[2];
+  const r1 = memory.right[0];
+  const r2 = memory.right[1];
+  const r3 = memory.right[2];
+  const f1 = memory.f[0];
+  const f2 = memory.f[1];
+  const f3 = memory.f[2];
+  const s1 = memory.stored[0];
+  const s2 = memory.stored[1];
+  const s3 = memory.stored[2];
   const n = system.size;
   const factors = memory.factors!;
   const complex = memory.complex!;
-  const [[t11, t12, t13], [t21, t22, t23], [t31]] = T;
-  const [[i11, i12, i13], [i21, i22, i23], [i31, i32, i33]] = T_INVERSE;
   const gamma = GAMMA / h;
   const alpha = ALPHA / h;
   const beta = BETA / h;
@@ -372,8 +387,9 @@ function stageCurrents(stepper: Stepper, y: Float64Array): void {
  */
 export function estimateError(stepper: Stepper, h: number, start: Float64Array): void {
   const { system, z, memory, error } = stepper;
-  const [z1, z2, z3] = z;
-  const [e1, e2, e3] = ERROR_WEIGHTS;
+  const z1 = z[0];
+  const z2 = z[1];
+  const z3 = z[2];
   const n = system.size;
   const combined = memory.y;
   for (let i = 0; i < system.vectorLength; i++) combined[i] = (e1 * z1[i]! + e2 * z2[i]! + e3 * z3[i]!) / h;
