@@ -2,7 +2,7 @@
 import { type NoteCase, reference } from './note-case.ts';
 
 /** k 300 K / e in volt, by the exact SI constants (13: BIPM, SI brochure, 2019). */
-const VT_300 = 0.0258519997864355323;
+const VT_300 = 0.025851999786435532;
 
 type Numbers = { readonly [key: string]: number };
 
