@@ -14,6 +14,7 @@ declare module '@11ty/eleventy' {
   export default class Eleventy {
     constructor(input?: string, output?: string, options?: { configPath?: string; quietMode?: boolean });
     setConfigPathOverride?(path: string): void;
+    disableLogger(): void;
     init(): Promise<void>;
     write(): Promise<unknown>;
     toJSON(): Promise<{ url: string; outputPath: string; content: string }[]>;

@@ -20,6 +20,13 @@ export interface OhmfolioOptions {
   readonly watch?: readonly string[];
 }
 
+let lastNotes: readonly NoteEntry[] = [];
+
+/** What the pages of this process's last build were made from. */
+export function notesOfLastBuild(): readonly NoteEntry[] {
+  return lastNotes;
+}
+
 export function ohmfolio(eleventyConfig: UserConfig, options: OhmfolioOptions = {}): void {
   eleventyConfig.versionCheck('>=3.0');
   const projectRoot = resolve(options.projectRoot ?? '.');
@@ -31,6 +38,7 @@ export function ohmfolio(eleventyConfig: UserConfig, options: OhmfolioOptions = 
   let notes: NoteEntry[] = [];
   eleventyConfig.on('eleventy.before', async () => {
     notes = await renderSite(buildSiteModel(folders));
+    lastNotes = notes;
   });
   eleventyConfig.addGlobalData('ohmfolio', () => ({ notes, plotStyles: plotStyles() }));
   eleventyConfig.on('eleventy.after', ({ directories }: { directories: { output: string } }) => {

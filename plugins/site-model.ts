@@ -4,6 +4,7 @@ import { basename, join, relative, sep } from 'node:path';
 import type { CheckContext, FigureInScope } from './expressions/context.ts';
 import type { Note } from './language/model.ts';
 import { readNote } from './language/read-note.ts';
+import { fileText, type Problem, problemAt } from './problems.ts';
 import type { SolvedNote } from './results.ts';
 import { solveNote } from './solve-note.ts';
 
@@ -19,14 +20,7 @@ export interface SiteModel {
   readonly notes: readonly SolvedNote[];
 }
 
-let last: SiteModel | undefined;
-
-/** What the last build of this process was made from. */
-export function lastSiteModel(): SiteModel | undefined {
-  return last;
-}
-
-/** Reads and solves every note below the notes' folder. */
+/** Reads and solves every note of the notes' folder. */
 export function buildSiteModel(folders: SiteFolders): SiteModel {
   const { projectRoot, partsFolder } = folders;
   const files = new Map<string, string>();
@@ -42,8 +36,7 @@ export function buildSiteModel(folders: SiteFolders): SiteModel {
         : { file: relative(projectRoot, file).split(sep).join('/'), text: readFileSync(file, 'utf8') };
     },
   });
-  last = { notes: [...files.keys()].map((id) => reader.solve(id)!) };
-  return last;
+  return { notes: [...files.keys()].map((id) => reader.solve(id)!) };
 }
 
 export interface NoteReader {
@@ -70,7 +63,9 @@ export function createNoteReader(options: {
     if (!found) return undefined;
     reading.add(id);
     const { projectRoot, partsFolder } = options;
-    const note = readNote(found.text, { file: found.file, projectRoot, partsFolder, otherNotes });
+    const note = orBroken(found, () =>
+      readNote(found.text, { file: found.file, projectRoot, partsFolder, otherNotes }),
+    );
     reading.delete(id);
     notes.set(id, note);
     return note;
@@ -94,12 +89,11 @@ export function createNoteReader(options: {
     const note = solving.has(id) ? undefined : read(id);
     if (!note) return undefined;
     solving.add(id);
-    const result = solveNote(note, {
-      foreignFigure: (other, name) => {
-        const tables = solve(other)?.figureTables ?? [];
-        return tables.flatMap(({ results }) => results).find(({ figure }) => figure.name === name)?.nominal?.value;
-      },
-    });
+    const foreignFigure = (other: string, name: string): number | undefined => {
+      const tables = solve(other)?.figureTables ?? [];
+      return tables.flatMap(({ results }) => results).find(({ figure }) => figure.name === name)?.nominal?.value;
+    };
+    const result = orUnsolved(note, () => solveNote(note, { foreignFigure }));
     solving.delete(id);
     solved.set(id, result);
     return result;
@@ -107,10 +101,43 @@ export function createNoteReader(options: {
   return { solve };
 }
 
+/** A fault of this program in one note leaves the others as they are. */
+function orBroken({ file, text }: { readonly file: string; readonly text: string }, read: () => Note): Note {
+  try {
+    return read();
+  } catch (error) {
+    return {
+      file,
+      id: basename(file).replace(/\.md$/i, ''),
+      text,
+      titleBlock: { title: basename(file), status: 'draft', reviewers: [] },
+      blocks: [],
+      inlineValues: [],
+      problems: [internalProblem(file, text, error)],
+      dependencies: [],
+    };
+  }
+}
+
+function orUnsolved(note: Note, solve: () => SolvedNote): SolvedNote {
+  try {
+    return solve();
+  } catch (error) {
+    const problems = [...note.problems, internalProblem(note.file, note.text, error)];
+    return { note, problems, circuits: [], analyses: [], figureTables: [], plots: [], inlineValues: [] };
+  }
+}
+
+function internalProblem(file: string, text: string, error: unknown): Problem {
+  const reason = (error instanceof Error ? error.message : String(error)).replace(/^Internal error: /, '');
+  const place = { line: 1, column: 1, length: 1 };
+  return problemAt(fileText(file, text), place, { message: `Internal error: this note cannot be solved: ${reason}` });
+}
+
 function listNotes(folder: string): string[] {
   if (!existsSync(folder)) return [];
-  return readdirSync(folder, { recursive: true, withFileTypes: true })
-    .filter((entry) => entry.isFile() && /\.md$/i.test(entry.name))
-    .map((entry) => join(entry.parentPath, entry.name))
+  return readdirSync(folder, { withFileTypes: true })
+    .filter((entry) => !entry.isDirectory() && /\.md$/i.test(entry.name))
+    .map((entry) => join(folder, entry.name))
     .sort();
 }

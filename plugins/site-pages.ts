@@ -1,13 +1,15 @@
 /** The pages' data, as the layouts take it: everything already put into words or HTML. */
 import { SOLVER_VERSION } from '../solver/solve.ts';
 import type { NoteStatus, TitleBlock } from './language/model.ts';
+import { type Problem, sortProblems } from './problems.ts';
 import { exponent } from './render/analysis-summary.ts';
 import { verdictHtml } from './render/figure-table.ts';
-import { countErrors, type NotePage, renderNotePage } from './render/note-page.ts';
+import { type NotePage, renderNotePage } from './render/note-page.ts';
 import type { SolvedNote } from './results.ts';
 import type { SiteModel } from './site-model.ts';
 
 export interface NoteEntry {
+  readonly solved: SolvedNote;
   readonly id: string;
   readonly url: string;
   readonly titleBlock: TitleBlock;
@@ -16,6 +18,8 @@ export interface NoteEntry {
   readonly broken: number;
   readonly brokenHtml: string;
   readonly errors: number;
+  /** Those found by drawing included. */
+  readonly problems: readonly Problem[];
   readonly page: NotePage;
   /** Lines of the colophon, HTML. */
   readonly colophon: readonly string[];
@@ -37,9 +41,12 @@ export async function renderSite(model: SiteModel): Promise<NoteEntry[]> {
 
 async function renderEntry(solved: SolvedNote): Promise<NoteEntry> {
   const { note } = solved;
+  const page = await renderNotePage(solved);
+  const problems = sortProblems([...solved.problems, ...page.problems], note.file);
   const results = solved.figureTables.flatMap((table) => table.results);
   const broken = results.filter(({ verdict }) => verdict === 'broken' || verdict === 'too close to call').length;
   return {
+    solved,
     id: note.id,
     url: `notes/${encodeURIComponent(note.id)}.html`,
     titleBlock: note.titleBlock,
@@ -47,8 +54,9 @@ async function renderEntry(solved: SolvedNote): Promise<NoteEntry> {
     figures: results.length,
     broken,
     brokenHtml: broken > 0 ? `${verdictHtml('broken')} ${broken}` : '0',
-    errors: countErrors(solved.problems),
-    page: await renderNotePage(solved),
+    errors: problems.filter(({ severity }) => severity === 'error').length,
+    problems,
+    page,
     colophon: colophonOf(solved),
   };
 }

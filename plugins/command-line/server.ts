@@ -1,5 +1,5 @@
 /** A server for one folder, for this machine alone: loopback only, files of the folder only. */
-import { createReadStream, existsSync, realpathSync, statSync } from 'node:fs';
+import { createReadStream, existsSync, readFileSync, realpathSync, statSync } from 'node:fs';
 import { createServer, type IncomingMessage, type Server, type ServerResponse } from 'node:http';
 import { extname, join, resolve, sep } from 'node:path';
 
@@ -97,6 +97,12 @@ function answer(request: IncomingMessage, response: ServerResponse, folder: stri
   if (!existsSync(found)) return void response.writeHead(404, { 'Content-Type': 'text/plain' }).end('Not found\n');
   response.writeHead(file === undefined ? 404 : 200, headers);
   if (request.method === 'HEAD') return void response.end();
+  const depth = file === undefined ? (request.url ?? '/').replace(/[?#].*$/s, '').split('/').length - 2 : 0;
+  if (depth > 0) {
+    // the page stands in for one further down: its links are relative to the top
+    const page = readFileSync(found, 'utf8');
+    return void response.end(page.replace(/(href=")(?![a-z]+:|#|\/)/g, `$1${'../'.repeat(depth)}`));
+  }
   if (!reload || !type.startsWith('text/html')) return void createReadStream(found).pipe(response);
   const chunks: Buffer[] = [];
   createReadStream(found)

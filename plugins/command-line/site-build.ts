@@ -1,23 +1,35 @@
 /** Building the site, whole or not at all: into a temporary folder beside the output, which is swapped in at the end. */
-import { existsSync, mkdirSync, readdirSync, renameSync, rmSync } from 'node:fs';
+import { existsSync, mkdirSync, readdirSync, renameSync, rmSync, writeFileSync } from 'node:fs';
 import { basename, dirname, join, relative } from 'node:path';
 import Eleventy from '@11ty/eleventy';
+import { notesOfLastBuild } from '../ohmfolio.ts';
 import { formatProblem } from '../problems.ts';
-import { lastSiteModel, type SiteModel } from '../site-model.ts';
+import type { NoteEntry } from '../site-pages.ts';
+import { SITE_MARK, whyNotOutput } from './output-folder.ts';
+import { isRunning } from './running.ts';
 
 export interface BuiltSite {
-  readonly model: SiteModel;
+  readonly notes: readonly NoteEntry[];
   readonly seconds: number;
 }
 
+/** How often a site is put in place of one that another build put there meanwhile. */
+const SWAPS = 5;
+
+/**
+ * Builds the site; the last one stays until the new one is whole. Throws where `output` holds something else than a site, and where a page
+ * cannot be built; a note with problems is built with them on its page.
+ */
 export async function buildSite(options: {
   /** Absolute; the working directory must be it. */
   readonly projectRoot: string;
   /** Absolute. */
   readonly output: string;
-  readonly quiet?: boolean;
 }): Promise<BuiltSite> {
   const { projectRoot, output } = options;
+  const refusal = whyNotOutput(output, projectRoot);
+  if (refusal !== undefined)
+    throw new Error(`${output} would be replaced, and ${refusal}. Name a folder for the site alone.`);
   const started = performance.now();
   removeLeftovers(output);
   const temporary = `${output}.building-${process.pid}`;
@@ -28,22 +40,37 @@ export async function buildSite(options: {
       configPath: join(projectRoot, 'eleventy.config.ts'),
       quietMode: true,
     });
+    // the summary of the build is ours
+    eleventy.disableLogger();
     await eleventy.write();
+    writeFileSync(join(temporary, SITE_MARK), '');
     swapIn(temporary, output);
   } finally {
     rmSync(temporary, { recursive: true, force: true });
   }
-  const model = lastSiteModel();
-  if (!model) throw new Error('Internal error: the build read no notes');
-  return { model, seconds: (performance.now() - started) / 1000 };
+  return { notes: notesOfLastBuild(), seconds: (performance.now() - started) / 1000 };
+}
+
+/** An error and those that it wraps, outermost first. */
+function reasonsOf(error: unknown): string {
+  if (!(error instanceof Error)) return String(error);
+  const inner = (error as Error & { originalError?: unknown }).originalError ?? error.cause;
+  return inner === undefined ? error.message : `${error.message}: ${reasonsOf(inner)}`;
 }
 
 function swapIn(built: string, output: string): void {
   const old = `${output}.old-${process.pid}`;
-  if (!existsSync(built)) throw new Error('Internal error: the build wrote nothing');
-  if (existsSync(output)) renameSync(output, old);
-  renameSync(built, output);
-  rmSync(old, { recursive: true, force: true });
+  for (let attempt = 1; ; attempt++) {
+    if (existsSync(output)) renameSync(output, old);
+    try {
+      renameSync(built, output);
+      break;
+    } catch (error) {
+      if (attempt === SWAPS || !existsSync(output)) throw error;
+    } finally {
+      rmSync(old, { recursive: true, force: true });
+    }
+  }
 }
 
 /** What a killed build left behind: the temporary folders of processes that are gone; a site that was moved aside comes back. */
@@ -63,30 +90,22 @@ function escapeRegExp(text: string): string {
   return text.replace(/[.*+?^${}()|[\]\\]/g, '\\$&');
 }
 
-function isRunning(pid: number): boolean {
-  try {
-    process.kill(pid, 0);
-    return true;
-  } catch {
-    return false;
-  }
-}
-
 /** Prints every problem in full, then one line on the whole; the exit status that the build deserves. */
-export function reportBuild({ model, seconds }: BuiltSite): 0 | 2 {
+export function reportBuild({ notes, seconds }: BuiltSite): 0 | 2 {
   let errors = 0;
   let warnings = 0;
   let broken = 0;
   let figures = 0;
   let analyses = 0;
-  for (const { note, problems, figureTables, analyses: solved } of model.notes) {
+  for (const { solved, problems } of notes) {
+    const { note } = solved;
     for (const problem of problems) {
       console.error(`${formatProblem(problem)}\n`);
       if (problem.severity === 'error') errors++;
       else warnings++;
     }
-    analyses += solved.length;
-    for (const { results } of figureTables) {
+    analyses += solved.analyses.length;
+    for (const { results } of solved.figureTables) {
       figures += results.length;
       for (const { figure, verdict } of results) {
         if (verdict !== 'broken' && verdict !== 'too close to call') continue;
@@ -99,7 +118,7 @@ export function reportBuild({ model, seconds }: BuiltSite): 0 | 2 {
   }
   const count = (number: number, word: string): string => `${number} ${word}${number === 1 ? '' : 's'}`;
   console.log(
-    `${count(model.notes.length, 'note')}, ${count(analyses, 'solved analysis').replace('analysiss', 'analyses')}, ${count(figures, 'figure')}, ` +
+    `${count(notes.length, 'note')}, ${analyses} solved ${analyses === 1 ? 'analysis' : 'analyses'}, ${count(figures, 'figure')}, ` +
       `${count(broken, 'limit')} not kept, ${count(errors, 'problem')}${warnings > 0 ? `, ${count(warnings, 'warning')}` : ''}, ${seconds.toFixed(1)} s`,
   );
   return errors > 0 ? 2 : 0;

@@ -6,8 +6,8 @@ import type { Fence } from './fences.ts';
 import { type Field, readFields } from './fields.ts';
 import type { Place, PlotBlock, PlotLine } from './model.ts';
 import { report } from './passage.ts';
-import { plainValue } from './plain-value.ts';
 import { analysisOf } from './scope.ts';
+import { readVegaProperties } from './vega-properties.ts';
 import { type NoteScope, readExpressionNode, readUnitFor, written } from './written-expression.ts';
 import { readYaml, reportRepeatedKeys, type YamlEntry, type YamlNode } from './yaml-tree.ts';
 
@@ -203,5 +203,5 @@ function readVega(entry: YamlEntry | undefined): { readonly [key: string]: unkno
     });
     return 'wrong';
   }
-  return plainValue(entry.value) as { readonly [key: string]: unknown };
+  return readVegaProperties(entry.value) ?? 'wrong';
 }

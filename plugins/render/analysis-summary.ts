@@ -64,7 +64,9 @@ function describe({ block, runs }: SolvedAnalysis): string {
   }
   if (request.find === 'characteristic') parts.push(`${request.sweep} swept from ${sweptRange(request, runs[0]!)}`);
   if (block.temperatures.length > 0) {
-    parts.push(`at ${block.temperatures.map((kelvin) => Number((kelvin - ZERO_CELSIUS).toFixed(6))).join(', ')} °C`);
+    parts.push(
+      `at ${typographic(block.temperatures.map((kelvin) => Number((kelvin - ZERO_CELSIUS).toFixed(6))).join(', '))}\u00a0°C`,
+    );
   }
   for (const { designator, values } of block.vary)
     parts.push(`${designator} = ${values.map(({ text }) => text).join(', ')}`);

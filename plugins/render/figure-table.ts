@@ -2,7 +2,7 @@
 import type { Unit } from '../language/units.ts';
 import type { FigureResult, FigureTable, Measured, Verdict } from '../results.ts';
 import { escapeHtml, slug } from './html.ts';
-import { limitText, numberText, unitFor } from './number-text.ts';
+import { alignedAtPoint, limitText, numberText, unitFor } from './number-text.ts';
 
 const VERDICTS: {
   readonly [verdict in Verdict]: { readonly sign: string; readonly word: string; readonly name: string };
@@ -47,16 +47,19 @@ export function renderFigureTable(table: FigureTable): string {
   const head = columns
     .map(({ head, number }) => `<th scope="col"${number ? ' class="number"' : ''}>${head}</th>`)
     .join('');
-  const rows = results.map((result) => {
-    const { figure, nominal, minimum, maximum } = result;
+  const units = results.map(({ figure, nominal, minimum, maximum }) => {
     const magnitude = Math.max(...[nominal, minimum, maximum].map((measured) => Math.abs(measured?.value ?? 0)));
-    const unit = unitFor(figure.unit, figure.expression.dimension, magnitude);
-    const cells = columns.map(({ cell, number }, k) =>
-      k === 0
-        ? `<th scope="row">${cell(result, unit)}</th>`
-        : `<td${number ? ' class="number"' : ''}>${cell(result, unit)}</td>`,
+    return unitFor(figure.unit, figure.expression.dimension, magnitude);
+  });
+  const cells = columns.map(({ cell, number }) => {
+    const texts = results.map((result, row) => cell(result, units[row]!));
+    return number ? alignedAtPoint(texts) : texts;
+  });
+  const rows = results.map(({ figure }, row) => {
+    const [first, ...others] = columns.map(({ number }, k) =>
+      number ? `<td class="number">${cells[k]![row]}</td>` : k === 0 ? cells[k]![row]! : `<td>${cells[k]![row]}</td>`,
     );
-    return `<tr id="figure-${slug(figure.name)}">${cells.join('')}</tr>`;
+    return `<tr id="figure_${slug(figure.name)}"><th scope="row">${first}</th>${others.join('')}</tr>`;
   });
   return (
     `<div class="table-scroll" role="group" aria-label="${caption}" tabindex="0"><table class="figures"><caption>${caption}${under}</caption>` +

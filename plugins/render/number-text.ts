@@ -43,3 +43,23 @@ export function limitText(value: number, unit: Unit): string {
 export function typographic(number: string): string {
   return number.replace(/-/g, '\u2212');
 }
+
+/**
+ * Numbers of a column with their decimal points under each other, right-aligned: what follows the point is filled up with blanks of a
+ * digit's and a point's width. Entries without digits are left alone.
+ */
+export function alignedAtPoint(numbers: readonly string[]): string[] {
+  const decimals = numbers
+    .map((number) => /^[^.·]*\d(?:\.(\d+))?$/.exec(number))
+    .map((found) => found && (found[1] ?? '').length);
+  const most = Math.max(0, ...decimals.map((count) => count ?? 0));
+  if (most === 0) return [...numbers];
+  return numbers.map((number, k) => {
+    const count = decimals[k];
+    if (count === null || count === undefined) return number;
+    return number + (count === 0 ? POINT_WIDE : '') + DIGIT_WIDE.repeat(most - count);
+  });
+}
+
+const DIGIT_WIDE = '\u2007';
+const POINT_WIDE = '\u2008';

@@ -38,7 +38,7 @@ const QUANTITIES: { readonly [unit: string]: string } = {
 export type Json = { readonly [key: string]: unknown };
 
 export function plotSpecification(plot: SolvedPlot): Json {
-  const names = uniqueNames(plot.curves);
+  const names = seriesNames(plot.curves);
   const left = plot.curves.filter(({ side }) => side === 'left');
   const right = plot.curves.filter(({ side }) => side === 'right');
   const colour = {
@@ -136,7 +136,7 @@ const CONFIG: Json = {
   },
 };
 
-/** Stretches where a mark's condition holds, shaded over the whole height, the label written once a kind. */
+/** Stretches where a mark's condition holds, shaded over the whole height; the label stands above the plot, once a kind. */
 function spanLayers(plot: SolvedPlot): Json[] {
   const scale = plot.horizontal.scale;
   const values = plot.spans.map(({ label, from, to }) => ({ from: from * scale, to: to * scale, label }));
@@ -152,14 +152,14 @@ function spanLayers(plot: SolvedPlot): Json[] {
   return [
     {
       data: { values },
-      mark: { type: 'rect', color: STAND_INS['--plot-span'] },
+      mark: { type: 'rect', color: STAND_INS['--plot-span'], opacity: 0.75 },
       encoding: { x: { field: 'from', type: 'quantitative' }, x2: { field: 'to' } },
     },
     {
-      data: { values: firsts.map((span, k) => ({ ...span, row: 4 + 13 * k, middle: (span.from + span.to) / 2 })) },
+      data: { values: firsts.map((span, k) => ({ ...span, row: -5 - 13 * k, middle: (span.from + span.to) / 2 })) },
       mark: {
         type: 'text',
-        baseline: 'top',
+        baseline: 'bottom',
         align: 'center',
         fontSize: 10.5,
         color: STAND_INS['--plot-text'],
@@ -187,10 +187,12 @@ function quantityOf(curves: readonly Curve[]): string {
   return QUANTITIES[unit] ?? 'value';
 }
 
-export function uniqueNames(curves: readonly Curve[]): string[] {
+/** Names in the legend, all different; with two axes, what is read on the right one says so. */
+function seriesNames(curves: readonly Curve[]): string[] {
+  const twoAxes = new Set(curves.map(({ side }) => side)).size > 1;
   const seen = new Map<string, number>();
   return curves.map((curve) => {
-    const name = curveName(curve);
+    const name = curveName(curve) + (twoAxes && curve.side === 'right' ? ' (right axis)' : '');
     const count = (seen.get(name) ?? 0) + 1;
     seen.set(name, count);
     return count === 1 ? name : `${name} (${count})`;

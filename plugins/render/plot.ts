@@ -18,14 +18,11 @@ export interface RenderedPlot {
   readonly table: ValueTable;
 }
 
-/** `id` is unique in the page: all ids of the drawing begin with it. */
-export async function renderPlot(
-  plot: SolvedPlot,
-  options: { readonly id: string; readonly noteId: string },
-): Promise<RenderedPlot> {
+/** `id` is unique in the page: all ids of the drawing begin with it. Throws where the author's `vega:` leaves nothing that can be drawn. */
+export async function renderPlot(plot: SolvedPlot, options: { readonly id: string }): Promise<RenderedPlot> {
   const warnings: string[] = [];
   const own = plotSpecification(plot);
-  const specification = plot.block.vega ? mergeAuthorSpecification(own, plot.block.vega, warnings) : own;
+  const specification = plot.block.vega ? mergeAuthorSpecification(own, plot.block.vega) : own;
   const description = describe(plot);
   const drawing = await draw(specification, warnings);
   const title = plot.block.title ?? 'Plot';
@@ -60,7 +57,9 @@ async function draw(specification: Json, warnings: string[]): Promise<string> {
     loader: NOTHING as never,
   });
   try {
-    return await view.toSVG();
+    const svg = await view.toSVG();
+    if (/<path[^>]* d="[^"]*NaN/.test(svg)) throw new Error('a size or a scale is not a number');
+    return svg;
   } finally {
     view.finalize();
   }

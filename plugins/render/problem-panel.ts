@@ -2,30 +2,45 @@
 import type { Problem } from '../problems.ts';
 import { escapeHtml } from './html.ts';
 
-export function problemPanel(problem: Problem): string {
+/** `id` lets the list at the head of the note lead here. */
+export function problemPanel(problem: Problem, id?: string): string {
   const { file, line, column, length, sourceLine, message, expected, example, severity } = problem;
   const caret = `${sourceLine.slice(0, column - 1).replace(/[^\t]/g, ' ')}${'^'.repeat(length)}`;
+  const place = `${file}:${line}:${column}`;
   const rows = [
     expected === undefined ? '' : `<dt>Expected</dt><dd>${codeSpans(expected)}</dd>`,
     example === undefined ? '' : `<dt>Example</dt><dd><code>${escapeHtml(example)}</code></dd>`,
   ].join('');
   return [
-    `<div class="problem problem-${severity}" role="group" aria-label="${severity === 'error' ? 'Problem' : 'Warning'}">`,
-    `<p><strong>${severity === 'error' ? 'Problem' : 'Warning'}</strong> ${codeSpans(message)}</p>`,
-    `<pre tabindex="0"><code><span class="problem-place">${escapeHtml(`${file}:${line}:${column}`)}</span>\n`,
-    `${escapeHtml(sourceLine)}\n${escapeHtml(caret)}</code></pre>`,
+    `<div class="problem problem-${severity}" role="group" aria-label="${WORDS[severity]}"${id === undefined ? '' : ` id="${id}"`}>`,
+    `<p><strong>${WORDS[severity]}</strong> ${codeSpans(message)}</p>`,
+    `<p class="problem-place">${escapeHtml(place)}</p>`,
+    `<pre tabindex="0" aria-label="Source line"><code>${escapeHtml(sourceLine)}\n${escapeHtml(caret)}</code></pre>`,
     rows === '' ? '' : `<dl>${rows}</dl>`,
     '</div>',
   ].join('');
 }
 
-export function problemList(problems: readonly Problem[]): string {
-  if (problems.length === 0) return '';
-  const errors = problems.filter(({ severity }) => severity === 'error').length;
-  const heading =
-    errors > 0 ? `${errors} ${errors === 1 ? 'problem' : 'problems'} in this note` : 'Warnings in this note';
-  const items = problems.map((problem) => `<li>line ${problem.line}: ${codeSpans(problem.message)}</li>`).join('');
-  return `<section class="problem-list" aria-labelledby="problems"><h2 id="problems">${heading}</h2><ol>${items}</ol></section>`;
+const WORDS: { readonly [severity in Problem['severity']]: string } = { error: 'Problem', warning: 'Warning' };
+
+/** All problems of a note. Those with a panel of their own further down lead to it; the others (`id` undefined) are shown whole here. */
+export function problemList(entries: readonly { readonly problem: Problem; readonly id?: string }[]): string {
+  if (entries.length === 0) return '';
+  const errors = entries.filter(({ problem }) => problem.severity === 'error').length;
+  const warnings = entries.length - errors;
+  const parts = [
+    ...(errors > 0 ? [`${errors} ${errors === 1 ? 'problem' : 'problems'}`] : []),
+    ...(warnings > 0 ? [`${warnings} ${warnings === 1 ? 'warning' : 'warnings'}`] : []),
+  ];
+  const items = entries.map(({ problem, id }) =>
+    id === undefined
+      ? `<li>${problemPanel(problem)}</li>`
+      : `<li><a href="#${id}">line ${problem.line}</a>: ${codeSpans(problem.message)}</li>`,
+  );
+  return (
+    `<section class="problem-list${errors > 0 ? '' : ' only-warnings'}" aria-labelledby="problems">` +
+    `<h2 id="problems">${parts.join(' and ')} in this note</h2><ol>${items.join('')}</ol></section>`
+  );
 }
 
 /** Escapes, and sets what stands between backticks as code. */
