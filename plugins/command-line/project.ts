@@ -68,7 +68,9 @@ export function stop(status: number, message: string): never {
   process.exit(status);
 }
 
-/** What an error says, in one line. */
+/** What an error and those that it wraps say, outermost first, in one line. */
 export function reasonOf(error: unknown): string {
-  return error instanceof Error ? error.message : String(error);
+  if (!(error instanceof Error)) return String(error);
+  const inner = (error as Error & { originalError?: unknown }).originalError ?? error.cause;
+  return inner === undefined || inner === error ? error.message : `${error.message}: ${reasonOf(inner)}`;
 }

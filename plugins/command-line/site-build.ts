@@ -13,9 +13,6 @@ export interface BuiltSite {
   readonly seconds: number;
 }
 
-/** How often a site is put in place of one that another build put there meanwhile. */
-const SWAPS = 5;
-
 /**
  * Builds the site; the last one stays until the new one is whole. Throws where `output` holds something else than a site, and where a page
  * cannot be built; a note with problems is built with them on its page.
@@ -51,25 +48,18 @@ export async function buildSite(options: {
   return { notes: notesOfLastBuild(), seconds: (performance.now() - started) / 1000 };
 }
 
-/** An error and those that it wraps, outermost first. */
-function reasonsOf(error: unknown): string {
-  if (!(error instanceof Error)) return String(error);
-  const inner = (error as Error & { originalError?: unknown }).originalError ?? error.cause;
-  return inner === undefined ? error.message : `${error.message}: ${reasonsOf(inner)}`;
-}
-
 function swapIn(built: string, output: string): void {
   const old = `${output}.old-${process.pid}`;
-  for (let attempt = 1; ; attempt++) {
-    if (existsSync(output)) renameSync(output, old);
-    try {
-      renameSync(built, output);
-      break;
-    } catch (error) {
-      if (attempt === SWAPS || !existsSync(output)) throw error;
-    } finally {
-      rmSync(old, { recursive: true, force: true });
-    }
+  rmSync(old, { recursive: true, force: true });
+  if (existsSync(output)) renameSync(output, old);
+  try {
+    renameSync(built, output);
+  } catch (error) {
+    // another build was quicker, or the old site goes back to its place
+    if (existsSync(old) && !existsSync(output)) renameSync(old, output);
+    throw error;
+  } finally {
+    rmSync(old, { recursive: true, force: true });
   }
 }
 
