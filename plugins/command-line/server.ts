@@ -1,7 +1,7 @@
 /** A server for one folder, for this machine alone: loopback only, files of the folder only. */
-import { createReadStream, existsSync, readFileSync, realpathSync, statSync } from 'node:fs';
+import { existsSync, readFileSync, realpathSync, statSync } from 'node:fs';
 import { createServer, type IncomingMessage, type Server, type ServerResponse } from 'node:http';
-import { extname, join, resolve, sep } from 'node:path';
+import { extname, join, relative, resolve, sep } from 'node:path';
 
 export interface RunningServer {
   /** With a slash at its end. */
@@ -15,11 +15,22 @@ export interface RunningServer {
 const TYPES: { readonly [extension: string]: string } = {
   '.html': 'text/html; charset=utf-8',
   '.css': 'text/css; charset=utf-8',
+  '.js': 'text/javascript; charset=utf-8',
+  '.mjs': 'text/javascript; charset=utf-8',
   '.csv': 'text/csv; charset=utf-8',
   '.json': 'application/json; charset=utf-8',
-  '.svg': 'image/svg+xml',
-  '.js': 'text/javascript; charset=utf-8',
   '.txt': 'text/plain; charset=utf-8',
+  '.xml': 'application/xml; charset=utf-8',
+  '.svg': 'image/svg+xml',
+  '.png': 'image/png',
+  '.jpg': 'image/jpeg',
+  '.jpeg': 'image/jpeg',
+  '.gif': 'image/gif',
+  '.webp': 'image/webp',
+  '.avif': 'image/avif',
+  '.ico': 'image/x-icon',
+  '.woff2': 'font/woff2',
+  '.pdf': 'application/pdf',
 };
 
 /** Ports tried after the one that was asked for. */
@@ -34,13 +45,17 @@ export async function startServer(options: {
   readonly port: number;
   readonly reload?: boolean;
 }): Promise<RunningServer> {
+  const reload = options.reload === true;
   const listeners = new Set<ServerResponse>();
   const server = createServer((request, response) => {
     try {
-      if (options.reload && request.url === RELOAD_PATH) listen(response, listeners);
-      else answer(request, response, resolve(options.folder), options.reload === true);
+      if (refuse(request, response)) return;
+      if (reload && request.url === RELOAD_PATH) listen(request, response, listeners);
+      else answer(request, response, resolve(options.folder), reload);
     } catch {
-      if (!response.headersSent) response.writeHead(500).end();
+      // a file that went away between two looks, while the site is built again
+      if (!response.headersSent) send(request, response, { status: 500, type: TYPES['.txt']!, body: 'Try again.\n' });
+      else response.end();
     }
   });
   const port = await listenOn(server, options.port);
@@ -71,67 +86,110 @@ async function listenOn(server: Server, first: number): Promise<number> {
       });
     });
     if (typeof outcome === 'number') return outcome;
-    if (outcome.code !== 'EADDRINUSE' || port >= first + PORTS_TRIED) throw outcome;
+    if (outcome.code !== 'EADDRINUSE' || port >= Math.min(first + PORTS_TRIED, 65535)) throw outcome;
   }
 }
 
-function listen(response: ServerResponse, listeners: Set<ServerResponse>): void {
+/** Turns away what is not for this server; true where it did. */
+function refuse(request: IncomingMessage, response: ServerResponse): boolean {
+  const host = (request.headers.host ?? '').replace(/:\d+$/, '').toLowerCase();
+  // a page elsewhere that had its name point here must get nothing
+  if (host !== '127.0.0.1' && host !== 'localhost') {
+    send(request, response, { status: 403, type: TYPES['.txt']!, body: 'This server answers this machine only.\n' });
+    return true;
+  }
+  if (request.method === 'GET' || request.method === 'HEAD') return false;
+  response.setHeader('Allow', 'GET, HEAD');
+  send(request, response, { status: 405, type: TYPES['.txt']!, body: 'Pages can be read only.\n' });
+  return true;
+}
+
+function listen(request: IncomingMessage, response: ServerResponse, listeners: Set<ServerResponse>): void {
   response.writeHead(200, { 'Content-Type': 'text/event-stream', 'Cache-Control': 'no-store' });
+  if (request.method === 'HEAD') return void response.end();
   response.write('\n');
   listeners.add(response);
   response.on('close', () => listeners.delete(response));
 }
 
 function answer(request: IncomingMessage, response: ServerResponse, folder: string, reload: boolean): void {
-  const host = (request.headers.host ?? '').replace(/:\d+$/, '');
-  // a page elsewhere that had its name point here must get nothing
-  if (host !== '127.0.0.1' && host !== 'localhost')
-    return void response.writeHead(403).end('This server answers this machine only.\n');
-  if (request.method !== 'GET' && request.method !== 'HEAD') {
-    return void response.writeHead(405, { Allow: 'GET, HEAD' }).end();
+  const url = request.url ?? '/';
+  const file = fileFor(url, folder);
+  if (file === undefined) return void sendMissing(request, response, folder, reload);
+  // relative links of a folder's page need the slash
+  if (file.isIndexOf !== undefined && !pathOf(url).endsWith('/')) {
+    const path = relative(folder, file.isIndexOf).split(sep).filter(Boolean).map(encodeURIComponent).join('/');
+    response.setHeader('Location', `/${path}/${/\?.*$/s.exec(url)?.[0] ?? ''}`);
+    return void send(request, response, { status: 301, type: TYPES['.txt']!, body: '' });
   }
-  const file = fileFor(request.url ?? '/', folder);
-  const found = file ?? join(folder, '404.html');
-  const type = TYPES[extname(found).toLowerCase()] ?? 'application/octet-stream';
-  const headers = { 'Content-Type': type, 'Cache-Control': 'no-store', 'X-Content-Type-Options': 'nosniff' };
-  if (!existsSync(found)) return void response.writeHead(404, { 'Content-Type': 'text/plain' }).end('Not found\n');
-  response.writeHead(file === undefined ? 404 : 200, headers);
-  if (request.method === 'HEAD') return void response.end();
-  const depth = file === undefined ? (request.url ?? '/').replace(/[?#].*$/s, '').split('/').length - 2 : 0;
-  if (depth > 0) {
-    // the page stands in for one further down: its links are relative to the top
-    const page = readFileSync(found, 'utf8');
-    return void response.end(page.replace(/(href=")(?![a-z]+:|#|\/)/g, `$1${'../'.repeat(depth)}`));
-  }
-  if (!reload || !type.startsWith('text/html')) return void createReadStream(found).pipe(response);
-  const chunks: Buffer[] = [];
-  createReadStream(found)
-    .on('data', (chunk) => chunks.push(Buffer.from(chunk)))
-    .on('end', () => response.end(withReload(Buffer.concat(chunks).toString('utf8'))));
+  const type = TYPES[extname(file.path).toLowerCase()] ?? 'application/octet-stream';
+  const body = readFileSync(file.path);
+  send(request, response, { status: 200, type, body: reload ? withReload(body, type) : body });
 }
 
-/** The page with the script that loads it again, and a policy that lets it: while developing only. */
-function withReload(html: string): string {
-  return html
+/** The site's page for addresses that have none. It stands in for one further down: its links are relative to the top. */
+function sendMissing(request: IncomingMessage, response: ServerResponse, folder: string, reload: boolean): void {
+  const page = join(folder, '404.html');
+  if (!existsSync(page)) {
+    return void send(request, response, { status: 404, type: TYPES['.txt']!, body: 'There is no such page.\n' });
+  }
+  const depth = pathOf(request.url ?? '/').split('/').length - 2;
+  const html = readFileSync(page, 'utf8').replace(/(href=")(?![a-z]+:|#|\/)/g, `$1${'../'.repeat(Math.max(0, depth))}`);
+  const type = TYPES['.html']!;
+  send(request, response, { status: 404, type, body: reload ? withReload(html, type) : html });
+}
+
+function send(
+  request: IncomingMessage,
+  response: ServerResponse,
+  content: { readonly status: number; readonly type: string; readonly body: string | Buffer },
+): void {
+  response.writeHead(content.status, {
+    'Content-Type': content.type,
+    'Content-Length': Buffer.byteLength(content.body),
+    'Cache-Control': 'no-store',
+    'X-Content-Type-Options': 'nosniff',
+  });
+  if (request.method === 'HEAD') response.end();
+  else response.end(content.body);
+}
+
+/** A page with the script that loads it again, and a policy that lets it: while developing only. Other files stay as they are. */
+function withReload(body: string | Buffer, type: string): string | Buffer {
+  if (!type.startsWith('text/html')) return body;
+  return body
+    .toString('utf8')
     .replace("default-src 'none';", "default-src 'none'; connect-src 'self'; script-src 'unsafe-inline';")
     .replace('</body>', `<script>${RELOAD_SCRIPT}</script></body>`);
 }
 
+interface Found {
+  readonly path: string;
+  /** The folder whose page this is, where the address names the folder. */
+  readonly isIndexOf?: string;
+}
+
 /** The file that a request asks for, if it lies within the folder. */
-function fileFor(url: string, folder: string): string | undefined {
+function fileFor(url: string, folder: string): Found | undefined {
   let path: string;
   try {
-    path = decodeURIComponent(url.replace(/[?#].*$/s, ''));
+    path = decodeURIComponent(pathOf(url));
   } catch {
     return undefined;
   }
-  if (path.includes('\0')) return undefined;
-  let file = resolve(folder, `.${path.startsWith('/') ? path : `/${path}`}`);
-  if (!within(file, folder) || !existsSync(file)) return undefined;
-  if (statSync(file).isDirectory()) file = join(file, 'index.html');
-  if (!existsSync(file)) return undefined;
+  if (path.includes('\0') || !path.startsWith('/')) return undefined;
+  const asked = resolve(folder, `.${path}`);
+  if (!within(asked, folder) || !existsSync(asked)) return undefined;
+  const isFolder = statSync(asked).isDirectory();
+  const file = isFolder ? join(asked, 'index.html') : asked;
+  if (!existsSync(file) || !statSync(file).isFile()) return undefined;
   // links are followed only as far as they stay inside
-  return within(realpathSync(file), realpathSync(folder)) ? file : undefined;
+  if (!within(realpathSync(file), realpathSync(folder))) return undefined;
+  return isFolder ? { path: file, isIndexOf: asked } : { path: file };
+}
+
+function pathOf(url: string): string {
+  return url.replace(/[?#].*$/s, '');
 }
 
 function within(path: string, folder: string): boolean {
