@@ -17,7 +17,7 @@ import {
   solveStagesRobustly,
 } from './integrator/radau-step.ts';
 import { createRecorder, type Recorder, recordStep } from './integrator/recorder.ts';
-import { needsProbe, restart, unsettled } from './integrator/restart.ts';
+import { leakAcrossJunctions, needsProbe, restart, unsettled } from './integrator/restart.ts';
 import { findOperatingPoint, type StaticContext, unknownScale } from './operating-point.ts';
 import { highestAngularFrequency, segmentAt, waveCorners } from './wave-evaluation.ts';
 import { lagrangeWeights } from './waveform/waveform.ts';
@@ -323,15 +323,9 @@ function stepTo(march: March, end: number): void {
   }
 }
 
-/** Siemens across junctions where blocked ones alone leave a node loose. */
-const JUNCTION_LEAK = 1e-12;
-
-/** The last resort: nodes between blocked junctions are held by a leak across each. False where that has been done already. */
+/** Where blocked junctions alone leave a node loose: holds it, and goes on from consistent values. False where that has been done already. */
 function tieDown(march: March): boolean {
-  const { junctionLeak, laws } = march.system;
-  if (junctionLeak.siemens > 0 || laws.length === 0) return false;
-  junctionLeak.siemens = JUNCTION_LEAK;
-  march.context.remarks.add('junctions were given a leak of 1 pS, since blocked ones alone leave a node loose');
+  if (!leakAcrossJunctions(march.system, march.context)) return false;
   restartHere(march);
   return true;
 }

@@ -5,7 +5,7 @@ import { criticalVoltage, evaluateJunction, type JunctionLaw, junctionAt } from 
 import { buildMonotoneCubic, evaluateMonotoneCubic } from '../devices/monotone-cubic.ts';
 import { buildPattern, slotOf } from '../linear/pattern.ts';
 import { segmentAt } from '../wave-evaluation.ts';
-import { floatingIslands } from './floating-islands.ts';
+import { floatingCapacitors, floatingIslands } from './floating-islands.ts';
 import type { Drive, DrivenNode, ModalDevice, Mode, NonlinearLaw, System } from './system.ts';
 import { setMode } from './system.ts';
 
@@ -114,6 +114,9 @@ export function buildSystem(circuit: Circuit): System {
     modes: new Int8Array(stamp.modal.length),
     islands,
     dynamic,
+    storing: Array.from({ length: size }, (_, row) =>
+      storageValues.subarray(pattern.rowStart[row]!, pattern.rowStart[row + 1]!).some((value) => value !== 0),
+    ),
   };
   for (let k = 0; k < system.modal.length; k++) setMode(system, k, system.modal[k]!.initialMode);
   return system;
@@ -166,9 +169,12 @@ function listUnknowns(circuit: Circuit): { nodes: string[]; branches: string[]; 
     if (second !== REFERENCE_NODE && first !== REFERENCE_NODE) continue;
     if (nodes.delete(node)) drivenBy.set(component.designator, node);
   }
+  const floating = floatingCapacitors(circuit, drivenBy.values());
   const branches = circuit.components
     .filter(({ designator }) => !drivenBy.has(designator))
-    .filter((component) => sensed.has(component.designator) || hasOwnBranch(component))
+    .filter(
+      (component) => sensed.has(component.designator) || floating.has(component.designator) || hasOwnBranch(component),
+    )
     .map((component) => component.designator);
   return { nodes: [...nodes], branches, drivenBy };
 }

@@ -31,3 +31,23 @@ export function floatingIslands(circuit: Circuit): string[][] {
   groups.delete(find(REFERENCE_NODE));
   return [...groups.values()];
 }
+
+/**
+ * Capacitors of which no chain leads to the reference or to a node of known potential, though direct current does (across the load of a bridge).
+ * Their currents are made unknowns: in the equations of two nodes that a large capacitance over a short step ties together, the little that ties
+ * both to the rest would be lost in rounding.
+ */
+export function floatingCapacitors(circuit: Circuit, driven: Iterable<string>): Set<string> {
+  const capacitors = circuit.components.filter(({ kind }) => kind === 'capacitor');
+  // an island's charge is summed over its nodes' own equations
+  const reached = new Set([REFERENCE_NODE, ...driven, ...floatingIslands(circuit).flat()]);
+  for (let grown = true; grown; ) {
+    grown = false;
+    for (const { nodes } of capacitors) {
+      if (reached.has(nodes[0]) === reached.has(nodes[1])) continue;
+      for (const node of nodes) reached.add(node);
+      grown = true;
+    }
+  }
+  return new Set(capacitors.filter(({ nodes }) => !reached.has(nodes[0])).map(({ designator }) => designator));
+}

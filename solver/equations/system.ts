@@ -54,6 +54,8 @@ export interface System {
   readonly islands: readonly Island[];
   /** True where the unknown's column has an entry in `storage`: it carries charge or flux. */
   readonly dynamic: readonly boolean[];
+  /** True where the equation (row) has an entry in `storage`. */
+  readonly storing: readonly boolean[];
 }
 
 /** Where no current can flow for long, the charge decides: the first row's equation becomes Σ q = 0 over all rows. */

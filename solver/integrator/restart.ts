@@ -89,6 +89,9 @@ function movedCharge(system: System, before: Float64Array, after: Float64Array):
   return largest > MOVED * scale;
 }
 
+/** How many times longer the tiny step is where a leak was needed. */
+const LONGER = 1000;
+
 function holdCharges(
   stepper: Stepper,
   t: number,
@@ -99,10 +102,10 @@ function holdCharges(
 ): void {
   const { system, effort } = stepper;
   const guess = y.slice();
-  const attempt = (damped: boolean): boolean => {
+  const attempt = (damped: boolean, step = tiny): boolean => {
     const outcome = solveNewton(
       system,
-      { ...PLAIN, t, rate: 1 / tiny, missing, chargeRows: false, damped, maximumIterations: damped ? 400 : 100 },
+      { ...PLAIN, t, rate: 1 / step, missing, chargeRows: false, damped, maximumIterations: damped ? 400 : 100 },
       y,
     );
     effort.newtonIterations += outcome.iterations;
@@ -111,15 +114,21 @@ function holdCharges(
     return outcome.converged;
   };
   if (attempt(false)) return;
+  // what a leak alone holds must not be lost in the rounding of charges over the step
+  const longer = LONGER * tiny;
   if (system.modal.length > 0) {
     y.set(guess);
     for (let k = 0; k < system.modal.length; k++) setMode(system, k, system.modes[k]!, OPEN_LEAK, CONTACT_RESISTANCE);
-    if (attempt(false)) {
+    if (attempt(false, longer)) {
       context.remarks.add(
         'ideal contacts were given a leak of 1 pS where open and 1 nΩ where closed, since nothing else fixes a potential or shares out a current',
       );
       return;
     }
+  }
+  if (leakAcrossJunctions(system, context)) {
+    y.set(guess);
+    if (attempt(false, longer)) return;
   }
   y.set(guess);
   if (attempt(true)) {
@@ -127,6 +136,18 @@ function holdCharges(
     return;
   }
   throw unsettled(stepper, t, context.analysis, 'no consistent values were found after a jump');
+}
+
+/** Siemens across junctions where blocked ones alone leave a node loose. */
+const JUNCTION_LEAK = 1e-12;
+
+/** The last resort: nodes between blocked junctions are held by a leak across each. False where that has been done already. */
+export function leakAcrossJunctions(system: System, context: StaticContext): boolean {
+  const { junctionLeak, laws } = system;
+  if (junctionLeak.siemens > 0 || laws.length === 0) return false;
+  junctionLeak.siemens = JUNCTION_LEAK;
+  context.remarks.add('junctions were given a leak of 1 pS, since blocked ones alone leave a node loose');
+  return true;
 }
 
 /** Replaces the unknowns that carry no charge or flux by what a short step, taken back to its start, says of them. */
