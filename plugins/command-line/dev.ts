@@ -1,39 +1,43 @@
 /** `npm run dev`: builds, serves, and builds again when something changes; open pages load again. A mistake never ends it. */
-import { spawn } from 'node:child_process';
-import { existsSync, watch } from 'node:fs';
+import { type ChildProcess, spawn } from 'node:child_process';
 import { join } from 'node:path';
-import { PROJECT_ROOT, readArguments } from './project.ts';
+import { PROJECT_ROOT, readArguments, readPort, reasonOf, stop } from './project.ts';
 import { startServer } from './server.ts';
+import { watchFolders } from './watch-folders.ts';
 
 /** Milliseconds without a further change before a build begins: editors save in several strokes. */
 const QUIET = 120;
 
-const { values } = readArguments(process.argv.slice(2), {
-  values: ['port'],
-  files: 0,
-  usage: 'npm run dev [-- --port N]',
-});
-const folder = join(PROJECT_ROOT, '_site');
+const WATCHED = ['content', 'plugins', 'solver', 'site'];
 
-/** A fresh process for each build, so that edited program files count too. */
-function build(): Promise<number> {
-  return new Promise((done) => {
-    const child = spawn(process.execPath, ['--import', 'tsx', join(PROJECT_ROOT, 'plugins/command-line/build.ts')], {
-      cwd: PROJECT_ROOT,
-      stdio: 'inherit',
-    });
-    child.on('exit', (code) => done(code ?? 1));
-    child.on('error', () => done(1));
+const port = readPort(
+  readArguments(process.argv.slice(2), { values: ['port'], files: 0, usage: 'npm run dev [-- --port N]' }),
+);
+let child: ChildProcess | undefined;
+for (const signal of ['SIGINT', 'SIGTERM'] as const) {
+  process.on(signal, () => {
+    child?.kill();
+    process.exit(0);
   });
 }
 
-await build();
-const server = await startServer({ folder, port: Number(values.get('port') ?? 4870), reload: true });
-console.log(`Watching; the site is at ${server.address} (Ctrl-C ends it)`);
+/** A fresh process for each build, so that edited program files count too; whether there is a new site. */
+function build(): Promise<boolean> {
+  return new Promise((done) => {
+    child = spawn(process.execPath, ['--import', 'tsx', join(PROJECT_ROOT, 'plugins/command-line/build.ts')], {
+      cwd: PROJECT_ROOT,
+      stdio: 'inherit',
+    });
+    // status 2: built, with problems that the pages show
+    child.on('exit', (status) => done(status === 0 || status === 2));
+    child.on('error', () => done(false));
+  });
+}
 
 let timer: NodeJS.Timeout | undefined;
 let building = false;
 let again = false;
+let reload = (): void => {};
 
 async function rebuild(): Promise<void> {
   if (building) {
@@ -43,18 +47,27 @@ async function rebuild(): Promise<void> {
   building = true;
   do {
     again = false;
-    await build();
-    server.reload();
+    if (await build()) reload();
+    else console.error('The last site stays until the mistake is gone.');
   } while (again);
   building = false;
 }
 
-for (const name of ['content', 'plugins', 'solver', 'site', 'eleventy.config.ts']) {
-  const path = join(PROJECT_ROOT, name);
-  if (!existsSync(path)) continue;
-  watch(path, { recursive: name !== 'eleventy.config.ts' }, () => {
+// watched before the first build: what is saved meanwhile counts
+watchFolders(
+  WATCHED.map((name) => join(PROJECT_ROOT, name)),
+  (_, name) => {
+    // what editors keep beside a file while it is open
+    if (/^\.|~$/.test(name)) return;
     clearTimeout(timer);
     timer = setTimeout(rebuild, QUIET);
-  });
+  },
+);
+await rebuild();
+try {
+  const server = await startServer({ folder: join(PROJECT_ROOT, '_site'), port, reload: true });
+  reload = server.reload;
+  console.log(`Watching; the site is at ${server.address} (Ctrl-C ends it)`);
+} catch (error) {
+  stop(1, `The site cannot be served at port ${port}: ${reasonOf(error)}`);
 }
-for (const signal of ['SIGINT', 'SIGTERM'] as const) process.on(signal, () => process.exit(0));
