@@ -3,7 +3,7 @@
  * interval is halved where the cubic does not follow the curve, and split where a threshold device or a switch changes its mode.
  */
 import type { CharacteristicRequest, Effort } from './analysis.ts';
-import type { System } from './equations/system.ts';
+import type { NonlinearLaw, System } from './equations/system.ts';
 import { setMode } from './equations/system.ts';
 import { createRecorder, type Recorder, recordStep } from './integrator/recorder.ts';
 import { findOperatingPoint, type StaticContext } from './operating-point.ts';
@@ -50,6 +50,7 @@ export function traceCharacteristic(
       const key = i < nodes ? 'voltage' : 'current';
       scale[key] = Math.max(scale[key], Math.abs(y[i]!));
     }
+    for (const law of system.laws) scale.current = Math.max(scale.current, Math.abs(lawCurrent(law, y)));
   };
   const shortest = SHORTEST * (high - low);
 
@@ -83,6 +84,13 @@ export function traceCharacteristic(
       const allowed = accuracy * (Math.abs(check.y[i]!) + 0.01 * (i < nodes ? scale.voltage : scale.current));
       if (Math.abs(value - check.y[i]!) > allowed) return false;
     }
+    // a junction straight across the swept source is no unknown, but its current is what bends
+    for (const law of system.laws) {
+      const current = lawCurrent(law, check.y);
+      let value = 0;
+      for (let s = 0; s < 4; s++) value += CHECK_WEIGHTS[s]! * lawCurrent(law, step[s]!.y);
+      if (Math.abs(value - current) > accuracy * (Math.abs(current) + 0.01 * scale.current)) return false;
+    }
     return true;
   };
 
@@ -99,6 +107,13 @@ export function traceCharacteristic(
     if (previous.at < next.at) previous = cover({ ...previous, modes: next.modes }, next);
   }
   return recorder;
+}
+
+const evaluated = new Float64Array(2);
+
+function lawCurrent(law: NonlinearLaw, y: Float64Array): number {
+  law.evaluate(y[law.first]! - y[law.second]!, evaluated);
+  return evaluated[0]!;
 }
 
 function sameModes(a: Int8Array, b: Int8Array): boolean {
