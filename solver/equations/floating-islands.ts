@@ -32,22 +32,30 @@ export function floatingIslands(circuit: Circuit): string[][] {
   return [...groups.values()];
 }
 
+/** Kinds that hold a node whatever the rest of the circuit does. */
+const HOLDS = new Set(['resistor', 'source', 'inductor', 'controlled-source', 'curve']);
+
 /**
- * Capacitors of which no chain leads to the reference or to a node of known potential, though direct current does (across the load of a bridge).
+ * Capacitors in groups that only junctions and contacts tie to the rest, so that blocked ones leave next to nothing (across the load of a bridge).
  * Their currents are made unknowns: in the equations of two nodes that a large capacitance over a short step ties together, the little that ties
  * both to the rest would be lost in rounding.
  */
 export function floatingCapacitors(circuit: Circuit, driven: Iterable<string>): Set<string> {
+  const group = new Map<string, string>();
+  const find = (node: string): string => {
+    let root = node;
+    for (let up = group.get(root); up !== undefined && up !== root; up = group.get(root)) root = up;
+    return root;
+  };
   const capacitors = circuit.components.filter(({ kind }) => kind === 'capacitor');
-  // an island's charge is summed over its nodes' own equations
-  const reached = new Set([REFERENCE_NODE, ...driven, ...floatingIslands(circuit).flat()]);
-  for (let grown = true; grown; ) {
-    grown = false;
-    for (const { nodes } of capacitors) {
-      if (reached.has(nodes[0]) === reached.has(nodes[1])) continue;
-      for (const node of nodes) reached.add(node);
-      grown = true;
-    }
+  for (const { nodes } of capacitors) group.set(find(nodes[0]), find(nodes[1]));
+  // groups that something linear leads out of, or that hold a known potential or a charge of their own
+  const held = new Set([REFERENCE_NODE, ...driven, ...floatingIslands(circuit).flat()].map(find));
+  for (const { kind, nodes } of circuit.components) {
+    const [first, second] = [find(nodes[0]), find(nodes[1])];
+    if (!HOLDS.has(kind) || first === second) continue;
+    held.add(first);
+    held.add(second);
   }
-  return new Set(capacitors.filter(({ nodes }) => !reached.has(nodes[0])).map(({ designator }) => designator));
+  return new Set(capacitors.filter(({ nodes }) => !held.has(find(nodes[0]))).map(({ designator }) => designator));
 }
