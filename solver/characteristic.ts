@@ -16,6 +16,9 @@ const SHORTEST = 1e-9;
 const CHECKED_AT = 0.4;
 const CHECK_WEIGHTS = lagrangeWeights(CHECKED_AT);
 
+/** The same for the laws' currents, which cost no solution: between every two nodes. */
+const LAW_CHECK_WEIGHTS = [0.07, CHECKED_AT, 0.85].map(lagrangeWeights);
+
 interface Point {
   readonly at: number;
   readonly y: Float64Array;
@@ -50,7 +53,8 @@ export function traceCharacteristic(
       const key = i < nodes ? 'voltage' : 'current';
       scale[key] = Math.max(scale[key], Math.abs(y[i]!));
     }
-    for (const law of system.laws) scale.current = Math.max(scale.current, Math.abs(lawCurrent(law, y)));
+    for (const law of system.laws)
+      scale.current = Math.max(scale.current, Math.abs(lawCurrent(law, y[law.first]! - y[law.second]!)));
   };
   const shortest = SHORTEST * (high - low);
 
@@ -86,10 +90,13 @@ export function traceCharacteristic(
     }
     // a junction straight across the swept source is no unknown, but its current is what bends
     for (const law of system.laws) {
-      const current = lawCurrent(law, check.y);
-      let value = 0;
-      for (let s = 0; s < 4; s++) value += CHECK_WEIGHTS[s]! * lawCurrent(law, step[s]!.y);
-      if (Math.abs(value - current) > accuracy * (Math.abs(current) + 0.01 * scale.current)) return false;
+      const voltages = step.map(({ y }) => y[law.first]! - y[law.second]!);
+      const currents = voltages.map((voltage) => lawCurrent(law, voltage));
+      for (const weights of LAW_CHECK_WEIGHTS) {
+        const current = lawCurrent(law, combine(weights, voltages));
+        const allowed = accuracy * (Math.abs(current) + 0.01 * scale.current);
+        if (Math.abs(combine(weights, currents) - current) > allowed) return false;
+      }
     }
     return true;
   };
@@ -111,9 +118,13 @@ export function traceCharacteristic(
 
 const evaluated = new Float64Array(2);
 
-function lawCurrent(law: NonlinearLaw, y: Float64Array): number {
-  law.evaluate(y[law.first]! - y[law.second]!, evaluated);
+function lawCurrent(law: NonlinearLaw, voltage: number): number {
+  law.evaluate(voltage, evaluated);
   return evaluated[0]!;
+}
+
+function combine(weights: readonly number[], values: readonly number[]): number {
+  return weights.reduce((sum, weight, k) => sum + weight * values[k]!, 0);
 }
 
 function sameModes(a: Int8Array, b: Int8Array): boolean {
