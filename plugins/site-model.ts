@@ -72,7 +72,8 @@ export function createNoteReader(options: {
   };
   const otherNotes: Pick<CheckContext, 'foreignFigure' | 'notes'> = {
     notes: options.ids,
-    foreignFigure: (id, name): FigureInScope | 'unknown note' | 'unknown figure' => {
+    foreignFigure: (id, name): FigureInScope | 'unknown note' | 'unknown figure' | 'circle' => {
+      if (reading.has(id)) return 'circle';
       const note = read(id);
       if (!note) return 'unknown note';
       for (const block of note.blocks) {

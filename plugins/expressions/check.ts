@@ -73,10 +73,16 @@ function resolveForeign(node: ExpressionNode & { type: 'foreign' }, context: Che
   if (found === 'unknown note') {
     return { message: `there is no note \`${clip(note)}\``, expected: expectedName(note, context.notes ?? []) };
   }
+  if (found === 'circle') {
+    return {
+      message: `note \`${clip(note)}\` takes a figure of this note, so this note can take none of its: they would go round in a circle`,
+      expected: 'references in one direction',
+    };
+  }
   if (found === 'unknown figure') {
     return {
       message: `note \`${note}\` has no figure \`${clip(figure)}\``,
-      expected: 'the name of a figure in its `figures` blocks',
+      expected: 'the name of a figure in its `figures` blocks that has no problem of its own',
     };
   }
   return { kind: found.kind, dimension: found.dimension, node: { type: 'figure', name: figure, note, span } };

@@ -13,8 +13,11 @@ export interface CheckContext {
   readonly circuit?: string;
   /** Figures of this note that stand above, by name. */
   readonly figures: ReadonlyMap<string, FigureInScope>;
-  /** A figure of another note; `unknown note` and `unknown figure` lead to a fault. Default: every note is unknown. */
-  readonly foreignFigure?: (note: string, figure: string) => FigureInScope | 'unknown note' | 'unknown figure';
+  /** A figure of another note; the words lead to a fault (`circle`: that note itself waits for this one). Default: every note is unknown. */
+  readonly foreignFigure?: (
+    note: string,
+    figure: string,
+  ) => FigureInScope | 'unknown note' | 'unknown figure' | 'circle';
   /** Names to suggest where another note is unknown. */
   readonly notes?: readonly string[];
   /**
