@@ -77,9 +77,9 @@ function limitOf({ lowerLimit, upperLimit, figure }: FigureResult, unit: Unit): 
   if (!must) return '';
   const low = lowerLimit === undefined ? undefined : limitText(lowerLimit, unit);
   const high = upperLimit === undefined ? undefined : limitText(upperLimit, unit);
-  if (low !== undefined && high !== undefined) return `${low} … ${high}`;
-  if (low !== undefined) return `${must.lower?.inclusive ? '≥' : '>'} ${low}`;
-  if (high !== undefined) return `${must.upper?.inclusive ? '≤' : '<'} ${high}`;
+  if (low !== undefined && high !== undefined) return `${low}\u00a0…\u00a0${high}`;
+  if (low !== undefined) return `${must.lower?.inclusive ? '≥' : '>'}\u00a0${low}`;
+  if (high !== undefined) return `${must.upper?.inclusive ? '≤' : '<'}\u00a0${high}`;
   return must.text;
 }
 

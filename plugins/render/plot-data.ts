@@ -2,10 +2,14 @@
 import { onCommonGrid } from '../../solver/waveform/grids.ts';
 import { thin } from '../../solver/waveform/thin.ts';
 import { valueAt } from '../../solver/waveform/value-at.ts';
+import type { Waveform } from '../../solver/waveform/waveform.ts';
 import type { Curve, SolvedPlot } from '../results.ts';
 
 /** Points drawn of a curve, about: more are not seen on a page. */
-const POINTS = 480;
+const POINTS = 1200;
+
+/** What is this small beside the greatest value of its curve is rounding: it is shown as zero. */
+const ROUNDING = 1e-13;
 
 /** Rows of the table beside a plot. */
 const TABLE_ROWS = 13;
@@ -92,7 +96,24 @@ function rowAt(plot: SolvedPlot, x: number, text: (value: number) => string): st
   const first = against
     ? [text(x), text(valueAt(against, x) * plot.horizontal.scale)]
     : [text(x * plot.horizontal.scale)];
-  return [...first, ...plot.curves.map(({ waveform, scale }) => text(valueAt(waveform, x) * scale))];
+  return [...first, ...plot.curves.map((curve) => text(cleanValue(curve, x) * curve.scale))];
+}
+
+function cleanValue({ waveform }: Curve, x: number): number {
+  const value = valueAt(waveform, x);
+  return Math.abs(value) < ROUNDING * greatestOf(waveform) ? 0 : value;
+}
+
+const greatest = new WeakMap<Waveform, number>();
+
+function greatestOf(waveform: Waveform): number {
+  let result = greatest.get(waveform);
+  if (result === undefined) {
+    result = 0;
+    for (const value of waveform.values) if (Math.abs(value) > result) result = Math.abs(value);
+    greatest.set(waveform, result);
+  }
+  return result;
 }
 
 function axisRange({ curves }: SolvedPlot): [number, number] {
@@ -111,7 +132,14 @@ function csvCell(text: string): string {
   return /[",\r\n]/.test(safe) ? `"${safe.replaceAll('"', '""')}"` : safe;
 }
 
+/** Four digits, as a reader writes them. */
 export function shortNumber(value: number): string {
   if (!Number.isFinite(value)) return '–';
-  return String(Number(value.toPrecision(4))).replace('-', '\u2212');
+  const [mantissa, exponent] = String(Number(value.toPrecision(4))).split('e');
+  const power = exponent === undefined ? '' : `·10${superscript(exponent.replace('+', ''))}`;
+  return mantissa!.replace('-', '\u2212') + power;
+}
+
+function superscript(text: string): string {
+  return text.replace(/[-0-9]/g, (character) => '⁻⁰¹²³⁴⁵⁶⁷⁸⁹'['-0123456789'.indexOf(character)]!);
 }

@@ -21,7 +21,7 @@ export const STAND_INS: { readonly [variable: string]: string } = {
   '--plot-span': '#010b04',
 };
 
-const FONT = 'Seravek, "Segoe UI", "Noto Sans", "Liberation Sans", Arial, sans-serif';
+export const FONT = 'Seravek, "Segoe UI", "Noto Sans", "Liberation Sans", Arial, sans-serif';
 
 const QUANTITIES: { readonly [unit: string]: string } = {
   V: 'voltage',

@@ -6,7 +6,7 @@ import { escapeHtml } from './html.ts';
 import { curveName, drawnPoints, plotCsv, shortNumber, type ValueTable, valueTable } from './plot-data.ts';
 import { mergeAuthorSpecification } from './plot-merge.ts';
 import { PLOT_PALETTE } from './plot-palette.ts';
-import { type Json, plotSpecification, STAND_INS } from './plot-spec.ts';
+import { FONT, type Json, plotSpecification, STAND_INS } from './plot-spec.ts';
 
 export interface RenderedPlot {
   readonly svg: string;
@@ -80,15 +80,28 @@ function dress(svg: string, id: string, title: string, description: string): str
   const height = size ? Math.ceil(Number(size[2])) : 320;
   const inner = svg
     .replace(/^<svg[^>]*>/, '')
-    .replace(/(\bid=")([^"]*")/g, `$1${id}-$2`)
-    .replace(/url\(#([^)]*)\)/g, `url(#${id}-$1)`)
-    .replace(/(href="#)([^"]*")/g, `$1${id}-$2`)
-    // roles and labels of the parts would be read out one by one: the description says it in a sentence
-    .replace(/ (role|aria-[a-z]+)="[^"]*"/g, '');
+    // labels that would overlap others are there all the same, unseen
+    .replace(/<text[^>]* opacity="0"[^>]*>[^<]*<\/text>/g, '')
+    .replace(/<path class="foreground" d=""[^>]*\/>/g, '')
+    .replace(/<[^>]*>/g, (tag) => dressTag(tag, id));
   const coloured = withColours(inner, (variable) => `var(${variable})`);
   return (
-    `<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 ${width} ${height}" width="${width}" height="${height}" role="img" aria-labelledby="${id}-title ${id}-desc">` +
+    `<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 ${width} ${height}" width="${width}" height="${height}" font-family="${escapeHtml(FONT)}" role="img" aria-labelledby="${id}-title ${id}-desc">` +
     `<title id="${id}-title">${escapeHtml(title)}</title><desc id="${id}-desc">${escapeHtml(description)}</desc>${coloured}`
+  );
+}
+
+/** One tag of the drawing: ids get their prefix, and what the page does not need goes. */
+function dressTag(tag: string, id: string): string {
+  return (
+    tag
+      .replace(/(\bid=")([^"]*")/g, `$1${id}-$2`)
+      .replace(/url\(#([^)]*)\)/g, `url(#${id}-$1)`)
+      .replace(/(href="#)([^"]*")/g, `$1${id}-$2`)
+      // roles and labels of the parts would be read out one by one: the description says it in a sentence
+      .replace(/ (?:role|aria-[a-z]+|class|pointer-events)="[^"]*"/g, '')
+      .replace(/ opacity="1"/g, '')
+      .replace(` font-family="${escapeHtml(FONT)}"`, '')
   );
 }
 

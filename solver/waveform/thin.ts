@@ -8,9 +8,12 @@ export interface Point {
   readonly y: number;
 }
 
-/** Points drawn in each step before thinning, as fractions of it. */
-const FRACTIONS = [0.25, 0.5, 0.75];
-/** A jump, or a change of slope, below this fraction of the range is not seen. */
+/** Straight pieces that a step is drawn in before thinning: as many as its curvature asks for, within these bounds. */
+const FEWEST_PIECES = 4;
+const MOST_PIECES = 64;
+/** Where straight pieces may pass a curve by, as a fraction of the range. */
+const CHORD_ERROR = 2e-4;
+/** What lies below this fraction of the range is not seen: a jump, a distance from a straight line. */
 const UNSEEN = 1e-4;
 
 /**
@@ -64,7 +67,9 @@ function candidates({ grid, values }: Waveform): { points: Point[]; jumps: Set<n
   const jumps = new Set<number>();
   const cubic = new Float64Array(4);
   const turns = new Float64Array(2);
-  const unseen = UNSEEN * rangeOf(values);
+  const range = rangeOf(values);
+  const unseen = UNSEEN * range;
+  const chordError = CHORD_ERROR * range;
   let interrupted = false;
   for (let k = 0; k + 1 < grid.length; k++) {
     const begin = grid[k]!;
@@ -82,11 +87,22 @@ function candidates({ grid, values }: Waveform): { points: Point[]; jumps: Set<n
     if (previous === undefined || interrupted || jump) points.push({ x: begin, y: startValue });
     interrupted = false;
     const turnCount = cubicTurns(cubic, turns);
-    const places = [...FRACTIONS, ...turns.subarray(0, turnCount)].sort((a, b) => a - b);
+    const pieces = piecesFor(cubic, chordError);
+    const places: number[] = Array.from(turns.subarray(0, turnCount));
+    for (let piece = 1; piece < pieces; piece++) places.push(piece / pieces);
+    places.sort((a, b) => a - b);
     for (const s of places) points.push({ x: begin + s * width, y: evaluateCubic(cubic, s) });
     points.push({ x: grid[k + 1]!, y: values[4 * k + 3]! });
   }
   return { points, jumps };
+}
+
+/** A chord over 1/n of a step misses a curve by at most max|f''| / (8 n²), the interpolation error of a straight line. */
+function piecesFor(cubic: Float64Array, chordError: number): number {
+  const [, , square = 0, cube = 0] = cubic;
+  const bend = Math.max(Math.abs(2 * square), Math.abs(2 * square + 6 * cube));
+  if (!(chordError > 0)) return FEWEST_PIECES;
+  return Math.max(FEWEST_PIECES, Math.min(MOST_PIECES, Math.ceil(Math.sqrt(bend / (8 * chordError)))));
 }
 
 /**
@@ -94,7 +110,7 @@ function candidates({ grid, values }: Waveform): { points: Point[]; jumps: Set<n
  * sides of jumps, and the greatest and the least point are kept.
  */
 function dropStraight(points: readonly Point[], jumps: ReadonlySet<number>): number[] {
-  const unseen = UNSEEN * 0.1 * rangeOf(points.map(({ y }) => y));
+  const unseen = UNSEEN * rangeOf(points.map(({ y }) => y));
   const fixed = new Set(jumps);
   let low = 0;
   let high = 0;

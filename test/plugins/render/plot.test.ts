@@ -1,0 +1,218 @@
+/** Drawings of plots. Shapes are checked on hand-made waveforms. */
+import { describe, expect, test } from 'vitest';
+import { renderPlot } from '../../../plugins/render/plot.ts';
+import { drawnPoints, plotCsv, valueTable } from '../../../plugins/render/plot-data.ts';
+import { PLOT_PALETTE } from '../../../plugins/render/plot-palette.ts';
+import { plotSpecification } from '../../../plugins/render/plot-spec.ts';
+import type { Curve, SolvedPlot } from '../../../plugins/results.ts';
+import { unbalanced } from './notes.ts';
+
+/** A polyline through the points as a waveform: values at the start, three nodes and the end of every step lie on its lines. */
+function polyline(points: readonly (readonly [number, number])[]): Curve['waveform'] {
+  const grid = Float64Array.from(points, ([x]) => x);
+  const values = new Float64Array(4 * (points.length - 1));
+  // the nodes of the three-stage Radau IIA method: E. Hairer, G. Wanner, Solving ODEs II, table IV.5.6
+  const nodes = [0, (4 - Math.sqrt(6)) / 10, (4 + Math.sqrt(6)) / 10, 1];
+  for (let k = 0; k + 1 < points.length; k++) {
+    const [from, to] = [points[k]![1], points[k + 1]![1]];
+    for (const [s, node] of nodes.entries()) values[4 * k + s] = from + node * (to - from);
+  }
+  return { grid, values };
+}
+
+function curve(label: string, points: readonly (readonly [number, number])[], more: Partial<Curve> = {}): Curve {
+  return { label, unit: 'V', scale: 1, side: 'left', conditions: [], waveform: polyline(points), ...more };
+}
+
+function plotOf(curves: readonly Curve[], more: Partial<SolvedPlot['block']> = {}): SolvedPlot {
+  return {
+    block: {
+      kind: 'plot',
+      name: 'plot',
+      line: 1,
+      endLine: 5,
+      source: '',
+      from: 'period',
+      lines: [],
+      right: [],
+      marks: [],
+      title: 'One period',
+      ...more,
+    },
+    horizontal: { label: 'time', unit: 'ms', scale: 1000 },
+    curves,
+    spans: [],
+  };
+}
+
+const TRIANGLE = [
+  [0, 0],
+  [0.005, 10],
+  [0.015, -10],
+  [0.02, 0],
+] as const;
+
+describe('a drawing', () => {
+  test('is the same bytes each time, whatever was drawn before', async () => {
+    const plot = plotOf([curve('a', TRIANGLE)]);
+    const first = await renderPlot(plot, { id: 'p' });
+    await renderPlot(plotOf([curve('b', TRIANGLE), curve('c', TRIANGLE)]), { id: 'q' });
+    expect(await renderPlot(plot, { id: 'p' })).toEqual(first);
+  });
+
+  test('is an image with a title and a description, and ids of its own', async () => {
+    const { svg, description } = await renderPlot(plotOf([curve('a', TRIANGLE)]), { id: 'plot_x' });
+    expect(svg).toMatch(/^<svg [^>]*role="img" aria-labelledby="plot_x-title plot_x-desc">/);
+    expect(svg).toContain('<title id="plot_x-title">One period</title>');
+    expect(description).toBe('A curve over time: a from \u221210 V to 10 V.');
+    // each part would be read out by itself
+    expect(svg.replace(/^<svg[^>]*>/, '')).not.toMatch(/ (role|aria-[a-z]+)=/);
+    for (const [, id] of svg.matchAll(/\bid="([^"]*)"/g)) expect(id).toMatch(/^plot_x-/);
+    for (const [, id] of svg.matchAll(/url\(#([^)]*)\)/g)) expect(svg).toContain(`id="${id}"`);
+    expect(unbalanced(svg)).toBeUndefined();
+  });
+
+  test('takes its colours from the style sheet, and has no background', async () => {
+    const { svg, spec } = await renderPlot(plotOf([curve('a', TRIANGLE), curve('b', TRIANGLE)]), { id: 'p' });
+    expect(svg).toContain('stroke="var(--plot-series-1)"');
+    expect(svg).toContain('stroke="var(--plot-series-2)"');
+    for (const [, colour] of svg.matchAll(/(?:fill|stroke)="([^"]*)"/g)) {
+      expect(colour).toMatch(/^(var\(--plot-[a-z0-9-]+\)|none|transparent)$/);
+    }
+    // the specification stands alone: real colours
+    expect(JSON.stringify(spec)).toContain(PLOT_PALETTE['--plot-series-1']!.light);
+    expect(JSON.stringify(spec)).not.toMatch(/var\(|#010[ab]0/);
+  });
+
+  test('has quantities with their units on the axes', async () => {
+    const current = curve('current', TRIANGLE, { side: 'right', unit: 'mA', scale: 1000 });
+    const { svg, warnings } = await renderPlot(plotOf([curve('a', TRIANGLE), curve('b', TRIANGLE), current]), {
+      id: 'p',
+    });
+    for (const words of ['time / ms', 'voltage / V', 'current / mA', 'current (right axis)']) {
+      expect(svg).toContain(`>${words}</text>`);
+    }
+    expect(warnings).toEqual([]);
+  });
+
+  test('tells curves apart without colour, and names each in the legend without cutting it', async () => {
+    const long = 'a label that is far longer than the hundred and sixty pixels that a legend grants by itself';
+    const family = ['470 nF', '1 µF'].map((text, k) =>
+      curve(long, TRIANGLE, { conditions: [{ name: 'C1', text, value: k }] }),
+    );
+    const { svg } = await renderPlot(plotOf(family), { id: 'p' });
+    expect(svg).toContain(`>${long}, C1 = 470 nF</text>`);
+    expect(svg).toContain(`>${long}, C1 = 1 µF</text>`);
+    expect(svg).toContain('stroke-dasharray="7,3"');
+  });
+
+  test('shades stretches and says what they are', async () => {
+    const plot = { ...plotOf([curve('a', TRIANGLE)]), spans: [{ label: 'dead', from: 0.004, to: 0.006 }] };
+    const { svg, description } = await renderPlot(plot, { id: 'p' });
+    expect(svg).toContain('fill="var(--plot-span)"');
+    expect(svg).toContain('>dead</text>');
+    expect(description).toContain('Shaded: dead.');
+  });
+
+  test('what an author writes is text', async () => {
+    const hostile = '<script>alert(1)</script>" onload="x" & \'';
+    const plot = {
+      ...plotOf([curve(hostile, TRIANGLE, { unit: '<b>' }), curve('b', TRIANGLE)], { title: hostile }),
+      spans: [{ label: hostile, from: 0, to: 0.001 }],
+    };
+    const { svg } = await renderPlot(plot, { id: 'p' });
+    expect(svg).not.toMatch(/<script|<b>/);
+    for (const [tag] of svg.matchAll(/<[a-z][^>]*>/g)) expect(tag).not.toMatch(/\sonload=/);
+    expect(unbalanced(svg)).toBeUndefined();
+  });
+
+  test('curves that do not exist everywhere are interrupted', async () => {
+    const { grid, values } = polyline(TRIANGLE);
+    values.fill(Number.NaN, 4, 8);
+    const broken = curve('a', TRIANGLE, { waveform: { grid, values } });
+    const points = drawnPoints(broken, plotOf([broken]));
+    expect(points.some(({ y }) => y === null)).toBe(true);
+    const { svg } = await renderPlot(plotOf([broken]), { id: 'p' });
+    expect(svg).not.toContain('NaN');
+  });
+});
+
+describe('properties of the author', () => {
+  test('are merged: sizes, axes of every curve, layers on top', async () => {
+    const vega = {
+      height: 90,
+      encoding: { x: { axis: { format: '.3f' } } },
+      mark: { strokeWidth: 5 },
+      layer: [{ data: { values: [{ y: 5 }] }, mark: 'rule', encoding: { y: { field: 'y', type: 'quantitative' } } }],
+    };
+    const { svg, spec } = await renderPlot(plotOf([curve('a', TRIANGLE)], { vega }), { id: 'p' });
+    expect(spec.height).toBe(90);
+    expect(svg).toContain('stroke-width="5"');
+    expect(svg).toMatch(/>4\.000<\/text>/);
+    expect((spec.layer as unknown[]).length).toBe(2);
+  });
+
+  test('that cannot be drawn are refused with a reason', async () => {
+    await expect(renderPlot(plotOf([curve('a', TRIANGLE)], { vega: { layer: [5] } }), { id: 'p' })).rejects.toThrow();
+  });
+
+  test('cannot change what all plots share', () => {
+    const vega = JSON.parse('{"config": {"__proto__": {"polluted": 1}}}') as { [key: string]: unknown };
+    plotSpecification(plotOf([curve('a', TRIANGLE)], { vega }));
+    expect(({} as { polluted?: number }).polluted).toBeUndefined();
+  });
+});
+
+describe('the numbers of a plot', () => {
+  test('long curves are thinned with their extremes kept', () => {
+    const points = Array.from({ length: 20_001 }, (_, k): [number, number] => [k / 20_000, Math.sin(k / 7)]);
+    points[12_345]![1] = 40;
+    points[17_001]![1] = -30;
+    const drawn = drawnPoints(curve('a', points), plotOf([curve('a', points)]));
+    expect(drawn.length).toBeLessThan(1500);
+    const values = drawn.map(({ y }) => y!);
+    expect(Math.max(...values)).toBe(40);
+    expect(Math.min(...values)).toBe(-30);
+  });
+
+  test('CSV: heads with units, values in these units, lines end as RFC 4180 says', () => {
+    const plot = plotOf([curve('a, "b"', TRIANGLE), curve('=1+1', TRIANGLE, { unit: 'mV', scale: 1000 })]);
+    const lines = plotCsv(plot).split('\r\n');
+    expect(lines[0]).toBe('time (ms),"a, ""b"" (V)", =1+1 (mV)');
+    expect(lines).toContain('5,10,10000');
+    expect(lines.at(-1)).toBe('');
+  });
+
+  test('a table of a dozen steps from end to end', () => {
+    const { columns, rows } = valueTable(plotOf([curve('a', TRIANGLE)]));
+    expect(columns).toEqual(['time (ms)', 'a (V)']);
+    expect(rows).toHaveLength(13);
+    expect(rows[0]).toEqual(['0', '0']);
+    // half way the triangle passes zero; at nine twelfths it is at its lowest
+    expect(rows[6]).toEqual(['10', '0']);
+    expect(rows[9]).toEqual(['15', '\u221210']);
+  });
+});
+
+// W3C, Web Content Accessibility Guidelines 2.2, criteria 1.4.3 and 1.4.11: 4.5 to 1 for text, 3 to 1 for parts of graphics
+test.each(['light', 'dark'] as const)('colours of plots stand out from a %s page', (theme) => {
+  const paper = { light: '#fbfaf7', dark: '#14181d' }[theme];
+  for (const [name, colours] of Object.entries(PLOT_PALETTE)) {
+    if (name.startsWith('--plot-series')) expect(contrast(colours[theme], paper), name).toBeGreaterThan(3);
+    if (name === '--plot-text') expect(contrast(colours[theme], paper), name).toBeGreaterThan(4.5);
+    if (name === '--plot-axis') expect(contrast(colours[theme], paper), name).toBeGreaterThan(3);
+  }
+});
+
+/** Contrast ratio and relative luminance as the guidelines define them. */
+function contrast(one: string, other: string): number {
+  const luminance = (colour: string): number => {
+    const [red, green, blue] = [1, 3, 5].map((at) => {
+      const channel = Number.parseInt(colour.slice(at, at + 2), 16) / 255;
+      return channel <= 0.04045 ? channel / 12.92 : ((channel + 0.055) / 1.055) ** 2.4;
+    });
+    return 0.2126 * red! + 0.7152 * green! + 0.0722 * blue!;
+  };
+  const [light, dark] = [luminance(one), luminance(other)].sort((a, b) => b - a);
+  return (light! + 0.05) / (dark! + 0.05);
+}
