@@ -29,13 +29,13 @@ export interface StaticContext {
 /** Solves for the operating point in place, from the guess in `y`, and leaves the system in its modes. */
 export function findOperatingPoint(system: System, y: Float64Array, context: StaticContext): void {
   const seen = new Set<string>();
-  for (;;) {
+  for (let round = 0; ; round++) {
     solveWithFallbacks(system, y, context);
-    const next = inconsistentDevice(system, y, seen.size > 4 * system.modal.length + 8);
+    const next = inconsistentDevice(system, y, round > 4 * system.modal.length + 8);
     if (!next) return;
     seen.add(system.modes.join(','));
     setMode(system, next.device, next.mode, OPEN_LEAK);
-    if (seen.has(system.modes.join(',')) && seen.size > 8 * system.modal.length + 64) {
+    if (seen.has(system.modes.join(',')) && round > 8 * system.modal.length + 64) {
       throw new NoSolution({
         analysis: context.analysis,
         component: system.modal[next.device]!.designator,
