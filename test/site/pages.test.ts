@@ -11,6 +11,7 @@ import { type Browser, type BrowserContext, chromium, type Page } from 'playwrig
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { findBrowser } from '../../plugins/command-line/find-browser.mjs';
 import { startServer } from '../../plugins/command-line/server.ts';
+import { BROWSER_OPTIONS } from './browser-options.ts';
 
 const browserPath = findBrowser();
 const folder = mkdtempSync(join(tmpdir(), 'site-'));
@@ -39,17 +40,7 @@ beforeAll(async () => {
   address = server.address;
   close = server.close;
   if (browserPath === undefined) return;
-  browser = await chromium.launch({
-    executablePath: browserPath,
-    args: [
-      '--no-sandbox',
-      '--disable-gpu',
-      '--no-first-run',
-      '--disable-background-networking',
-      '--disable-component-update',
-      '--disable-sync',
-    ],
-  });
+  browser = await chromium.launch({ executablePath: browserPath, ...BROWSER_OPTIONS });
 }, 300_000);
 
 afterAll(async () => {
