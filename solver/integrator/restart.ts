@@ -31,21 +31,20 @@ export function restart(
   const tiny = TINY * span;
   const limit = 8 * system.modal.length + 64;
   const idealLoops = needsProbe(system);
-  let lacking = missing;
+  if (missing) approachCharges(stepper, t, span, missing, y, context);
   const before = y.slice();
   for (let attempt = 0; attempt <= limit; attempt++) {
     const takeFirst = attempt > 2 * system.modal.length + 4;
     y.set(before);
-    holdCharges(stepper, t, tiny, lacking, y, context);
+    holdCharges(stepper, t, tiny, undefined, y, context);
     let next: ReturnType<typeof inconsistentDevice>;
-    if (lacking || movedCharge(system, before, y)) {
+    if (movedCharge(system, before, y)) {
       // Charge or flux was moved in no time. Its impulse may put a device into another mode; if not, what it leaves behind is where things go on from.
-      next = lacking ? undefined : inconsistentDevice(system, y, takeFirst);
+      next = inconsistentDevice(system, y, takeFirst);
       if (!next) {
         // the impulse itself is over: unknowns without memory start afresh
         for (let i = 0; i < system.size; i++) if (!system.dynamic[i]) y[i] = 0;
         before.set(y);
-        lacking = undefined;
         holdCharges(stepper, t, tiny, undefined, y, context);
       }
     }
@@ -68,6 +67,33 @@ export function restart(
         advice: 'give it an on_resistance, or a switch some hysteresis',
       });
     }
+  }
+}
+
+/** Lengths of the backward steps, as fractions of `span`, by which stated charges are approached. */
+const APPROACH = [1e-6, 1e-11];
+
+/**
+ * Moves y to charges far from its own, in steps that shorten: each leaves so much less to be moved. What the last leaves is dropped: over a shorter step, its
+ * rounding would drive currents of its own.
+ */
+function approachCharges(
+  stepper: Stepper,
+  t: number,
+  span: number,
+  missing: Float64Array,
+  y: Float64Array,
+  context: StaticContext,
+): void {
+  const { system } = stepper;
+  const held = new Float64Array(system.size + 1);
+  applyStorage(system, y, held);
+  const target = missing.map((value, i) => value + held[i]!);
+  let lacking = missing;
+  for (const fraction of APPROACH) {
+    holdCharges(stepper, t, fraction * span, lacking, y, context);
+    applyStorage(system, y, held);
+    lacking = target.map((value, i) => (i < system.size ? value - held[i]! : 0));
   }
 }
 
