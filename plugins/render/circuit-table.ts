@@ -2,6 +2,7 @@
 import type { CircuitBlock, ComponentDescription } from '../language/model.ts';
 import { titleFrom } from './figure-table.ts';
 import { escapeHtml, slug } from './html.ts';
+import { typographicWords } from './number-text.ts';
 
 export function renderCircuit(block: CircuitBlock): string {
   const caption = escapeHtml(block.caption ?? (block.name === 'circuit' ? 'Circuit' : titleFrom(block.name)));
@@ -28,5 +29,5 @@ export function componentAnchor(circuit: string, designator: string): string {
 
 /** A part that is a whole model has no value of its own. */
 function valueText({ value, part }: ComponentDescription): string {
-  return value === part ? '–' : value.replace(/(?<![\w])-(?=[\d.])/g, '\u2212');
+  return value === part ? '–' : typographicWords(value);
 }

@@ -2,7 +2,7 @@
 import type { Unit } from '../language/units.ts';
 import type { FigureResult, FigureTable, Measured, Verdict } from '../results.ts';
 import { escapeHtml, slug } from './html.ts';
-import { alignedAtPoint, limitText, numberText, unitFor } from './number-text.ts';
+import { alignedAtPoint, limitText, numberText, typographicWords, unitFor } from './number-text.ts';
 
 const VERDICTS: {
   readonly [verdict in Verdict]: { readonly sign: string; readonly word: string; readonly name: string };
@@ -16,7 +16,7 @@ export function renderFigureTable(table: FigureTable): string {
   const results = table.results.filter(({ figure }) => !figure.hidden);
   if (results.length === 0) return '';
   const has = (test: (result: FigureResult) => boolean): boolean => results.some(test);
-  const conditions = results.map((result) => result.conditions.join('; '));
+  const conditions = results.map((result) => typographicWords(result.conditions.join('; ')));
   const shared = new Set(conditions).size === 1 ? conditions[0]! : undefined;
   const columns: { head: string; cell: (result: FigureResult, unit: Unit) => string; number?: boolean }[] = [
     { head: 'Parameter', cell: ({ figure }) => escapeHtml(figure.label ?? figure.name.replaceAll('_', ' ')) },
@@ -24,7 +24,7 @@ export function renderFigureTable(table: FigureTable): string {
   if (has(({ figure }) => figure.symbol !== undefined))
     columns.push({ head: 'Symbol', cell: ({ figure }) => symbolHtml(figure.symbol) });
   if (shared === undefined)
-    columns.push({ head: 'Conditions', cell: (result) => escapeHtml(result.conditions.join('; ')) });
+    columns.push({ head: 'Conditions', cell: (result) => escapeHtml(typographicWords(result.conditions.join('; '))) });
   const number = (pick: (result: FigureResult) => Measured | undefined) => (result: FigureResult, unit: Unit) => {
     const measured = pick(result);
     return measured ? numberText(measured, unit, result.figure.digits) : '–';

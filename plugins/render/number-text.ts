@@ -44,6 +44,11 @@ export function typographic(number: string): string {
   return number.replace(/-/g, '\u2212');
 }
 
+/** The numbers within a text: their minus is a minus, and the units of temperature stay with them. */
+export function typographicWords(text: string): string {
+  return text.replace(/(?<![\w)])-(?=[\d.])/g, '\u2212').replace(/ °C/g, '\u00a0°C');
+}
+
 /**
  * Numbers of a column with their decimal points under each other, right-aligned: what follows the point is filled up with blanks of a
  * digit's and a point's width. Entries without digits are left alone.

@@ -1,5 +1,6 @@
 /** A plot as a Vega-Lite specification, colours standing in for style sheet variables. */
 import type { Curve, SolvedPlot } from '../results.ts';
+import { typographicWords } from './number-text.ts';
 import { curveName, drawnPoints } from './plot-data.ts';
 import { DASHES, SERIES_COUNT } from './plot-palette.ts';
 
@@ -192,7 +193,7 @@ function seriesNames(curves: readonly Curve[]): string[] {
   const twoAxes = new Set(curves.map(({ side }) => side)).size > 1;
   const seen = new Map<string, number>();
   return curves.map((curve) => {
-    const name = curveName(curve) + (twoAxes && curve.side === 'right' ? ' (right axis)' : '');
+    const name = typographicWords(curveName(curve)) + (twoAxes && curve.side === 'right' ? ' (right axis)' : '');
     const count = (seen.get(name) ?? 0) + 1;
     seen.set(name, count);
     return count === 1 ? name : `${name} (${count})`;

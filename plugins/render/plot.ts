@@ -3,6 +3,7 @@ import * as vega from 'vega';
 import { compile, type TopLevelSpec } from 'vega-lite';
 import type { SolvedPlot } from '../results.ts';
 import { escapeHtml } from './html.ts';
+import { typographicWords } from './number-text.ts';
 import { curveName, drawnPoints, plotCsv, shortNumber, type ValueTable, valueTable } from './plot-data.ts';
 import { mergeAuthorSpecification } from './plot-merge.ts';
 import { PLOT_PALETTE } from './plot-palette.ts';
@@ -122,7 +123,7 @@ function describe(plot: SolvedPlot): string {
       greatest = Math.max(greatest, y);
     }
     const unit = curve.unit === '' ? '' : ` ${curve.unit}`;
-    return `${curveName(curve)} from ${shortNumber(least)}${unit} to ${shortNumber(greatest)}${unit}`;
+    return `${typographicWords(curveName(curve))} from ${shortNumber(least)}${unit} to ${shortNumber(greatest)}${unit}`;
   });
   const marks = [...new Set(plot.spans.map(({ label }) => label))];
   return (

@@ -7,6 +7,7 @@ import {
   quantityText,
   supportedDigits,
   typographic,
+  typographicWords,
 } from '../../../plugins/render/number-text.ts';
 
 const milliampere = parseUnit('mA')!;
@@ -56,4 +57,10 @@ test('decimal points of a column stand under each other', () => {
   expect(aligned.slice(4)).toEqual(['–', '']);
   expect(aligned.map((text) => Number(text.replace('\u2212', '-'))).slice(0, 4)).toEqual([1.5, 30, 120, -0.1]);
   expect(alignedAtPoint(['1', '20'])).toEqual(['1', '20']);
+});
+
+test('numbers within words', () => {
+  expect(typographicWords('T = 25, -20, 60 °C; low -34 V, a-1')).toBe(
+    'T = 25, \u221220, 60\u00a0°C; low \u221234 V, a-1',
+  );
 });
