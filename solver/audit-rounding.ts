@@ -12,8 +12,10 @@ export interface Rounding {
   charge: number;
 }
 
-/** Relative rounding of the difference of two potentials, each off by a unit in its last place or two. */
-const POTENTIAL_ROUNDING = 4 * Number.EPSILON;
+/** Relative rounding of the difference of two potentials, each off by a unit in its last place or two and by what the sums of all steps before lost. */
+function potentialRounding({ grid }: Solution): number {
+  return Number.EPSILON * (4 + Math.sqrt(grid.length));
+}
 
 /** The largest weight of a value in the derivative of the cubic of a step (see quantities.ts), rounded up. */
 const DERIVATIVE_WEIGHT = 10;
@@ -22,6 +24,7 @@ const DERIVATIVE_WEIGHT = 10;
 export function roundingOf(solution: Solution): { currents: Map<string, Rounding>; power: Rounding } {
   const currents = new Map<string, Rounding>();
   const power: Rounding = { steady: 0, charge: 0 };
+  const rounding = potentialRounding(solution);
   for (const component of solution.circuit.components) {
     const conductance = conductanceOf(component);
     const capacitance = component.kind === 'capacitor' ? component.capacitance : 0;
@@ -29,8 +32,8 @@ export function roundingOf(solution: Solution): { currents: Map<string, Rounding
     const potential = Math.max(
       ...component.nodes.map((node) => greatestMagnitude(readQuantity(solution, { node }).values)),
     );
-    const steady = POTENTIAL_ROUNDING * (conductance * potential + greatestTabled(component));
-    const charge = DERIVATIVE_WEIGHT * POTENTIAL_ROUNDING * capacitance * potential;
+    const steady = rounding * (conductance * potential + greatestTabled(component));
+    const charge = DERIVATIVE_WEIGHT * rounding * capacitance * potential;
     for (const node of component.nodes) {
       const known = currents.get(node) ?? { steady: 0, charge: 0 };
       currents.set(node, { steady: known.steady + steady, charge: known.charge + charge });
