@@ -28,6 +28,12 @@ export const LOCAL_FRACTION = 1;
 /** A tolerance is relative to an unknown, or to this fraction of the largest one of its kind. */
 const SCALE_FRACTION = 0.1;
 
+/**
+ * Newton's method settles a junction's voltage to the tolerance (but not less than 1e-5: then the nodes' own do) times this many of its slope
+ * voltages, so that its current is right too.
+ */
+const SLOPES = 10;
+
 /** Steps that a single analysis may take. */
 const MAXIMUM_STEPS = 5_000_000;
 
@@ -347,7 +353,9 @@ function setWeights(march: March): void {
   const voltage = SCALE_FRACTION * scale.voltage;
   const current = SCALE_FRACTION * scale.current;
   for (let i = 0; i < system.size; i++) {
-    stepper.weight[i] = 1 / (tolerance * (Math.abs(y[i]!) + (i < nodes ? voltage : current)));
+    const weight = 1 / (tolerance * (Math.abs(y[i]!) + (i < nodes ? voltage : current)));
+    stepper.weight[i] = weight;
+    stepper.newtonWeight[i] = Math.max(weight, 1 / (Math.max(tolerance, 1e-5) * SLOPES * stepper.nodeSlope[i]!));
   }
 }
 

@@ -267,7 +267,17 @@ function addComponent(stamp: Stamp, component: Component, circuit: Circuit): voi
       } else {
         const law = junctionAt(component.law, circuit.temperature);
         const limit = law.seriesResistance > 0 ? undefined : junctionLimit(criticalVoltage(law), law.slopeVoltage);
-        addLaw(stamp, designator, first, second, plus, minus, junctionEvaluator(law, stamp.junctionLeak), limit);
+        addLaw(
+          stamp,
+          designator,
+          first,
+          second,
+          plus,
+          minus,
+          junctionEvaluator(law, stamp.junctionLeak),
+          law.slopeVoltage,
+          limit,
+        );
       }
   }
 }
@@ -290,10 +300,11 @@ function addLaw(
   plus: number,
   minus: number,
   evaluate: NonlinearLaw['evaluate'],
+  slopeVoltage?: number,
   limit?: NonlinearLaw['limit'],
 ): void {
   for (const row of [plus, minus]) for (const column of [first, second]) stamp.reserve(row, column);
-  stamp.laws.push({ designator, first, second, plus, minus, evaluate, limit });
+  stamp.laws.push({ designator, first, second, plus, minus, evaluate, slopeVoltage, limit });
 }
 
 /**

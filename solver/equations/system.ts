@@ -95,6 +95,8 @@ export interface NonlinearLaw {
   /** Current and conductance at v, to result[0] and result[1]. */
   readonly evaluate: (voltage: number, result: Float64Array) => void;
   /** The voltage to evaluate at, given the one last evaluated and the one Newton's method asks for. */
+  /** Volt by which the voltage must move for the current to change by a factor e, at its steepest; where it is a junction's. */
+  readonly slopeVoltage: number | undefined;
   readonly limit: ((previous: number, asked: number) => number) | undefined;
 }
 

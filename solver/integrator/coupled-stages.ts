@@ -209,7 +209,7 @@ function linearise(stepper: Stepper, memory: CoupledMemory, h: number, y: Float6
 
 /** Adds the update to the increments; its largest element in units of the tolerance. */
 function addUpdate(stepper: Stepper, update: Float64Array): number {
-  const { system, z, weight } = stepper;
+  const { system, z, newtonWeight } = stepper;
   const { size } = system;
   let largest = 0;
   for (let a = 0; a < 3; a++) {
@@ -217,7 +217,7 @@ function addUpdate(stepper: Stepper, update: Float64Array): number {
     for (let i = 0; i < size; i++) {
       const change = update[a * size + i]!;
       increment[i]! += change;
-      const scaled = Math.abs(change) * weight[i]!;
+      const scaled = Math.abs(change) * newtonWeight[i]!;
       if (!(scaled <= largest)) {
         largest = scaled;
         stepper.worst = i;

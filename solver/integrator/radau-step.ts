@@ -37,6 +37,10 @@ export interface Stepper {
   readonly error: Float64Array;
   /** 1 / tolerance by unknown; the caller keeps it up to date. */
   readonly weight: Float64Array;
+  /** The same for updates of Newton's method: at a junction's nodes, by how far its voltage may be off. */
+  readonly newtonWeight: Float64Array;
+  /** Least slope voltage of the junctions at a node; infinite where there is none. */
+  readonly nodeSlope: Float64Array;
   /** Length of the step that `z` belongs to; 0 where there is none to extrapolate from. */
   previousStep: number;
   /** Length of the step that the last prediction was extrapolated from; 0 where it was a constant. */
@@ -84,6 +88,8 @@ export function createStepper(system: System, effort: Effort): Stepper {
     predicted: new Float64Array(n),
     error: new Float64Array(n),
     weight: new Float64Array(n).fill(1),
+    newtonWeight: new Float64Array(n).fill(1),
+    nodeSlope: slopesAtNodes(system),
     previousStep: 0,
     extrapolatedFrom: 0,
     contraction: 0,
@@ -107,6 +113,15 @@ export function createStepper(system: System, effort: Effort): Stepper {
       law: new Float64Array(2),
     },
   };
+}
+
+function slopesAtNodes(system: System): Float64Array {
+  const slopes = new Float64Array(system.vectorLength).fill(Number.POSITIVE_INFINITY);
+  for (const { first, second, slopeVoltage } of system.laws) {
+    for (const node of [first, second])
+      slopes[node] = Math.min(slopes[node]!, slopeVoltage ?? Number.POSITIVE_INFINITY);
+  }
+  return slopes;
 }
 
 /** Forgets the last step: the next one starts from a constant. */
@@ -243,7 +258,7 @@ function factoriseStages(stepper: Stepper, h: number): boolean {
 }
 
 function iterate(stepper: Stepper, h: number, y: Float64Array): boolean {
-  const { system, z, memory, effort, weight } = stepper;
+  const { system, z, memory, effort, newtonWeight } = stepper;
   const z1 = z[0];
   const z2 = z[1];
   const z3 = z[2];
@@ -312,7 +327,7 @@ function iterate(stepper: Stepper, h: number, y: Float64Array): boolean {
       z1[i]! += d1;
       z2[i]! += d2;
       z3[i]! += d3;
-      const scale = weight[i]!;
+      const scale = newtonWeight[i]!;
       const size = (d1 * d1 + d2 * d2 + d3 * d3) * scale * scale;
       square += size;
       if (size > largest) {
