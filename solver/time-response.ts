@@ -37,6 +37,9 @@ const SLOPES = 10;
 /** Steps that a single analysis may take. */
 const MAXIMUM_STEPS = 5_000_000;
 
+/** Steps below this fraction of the span do not move the time on. */
+const STANDSTILL = 1e-12;
+
 /** Events in a row without the time moving on. */
 const MAXIMUM_CHATTER = 100;
 
@@ -76,6 +79,8 @@ interface March {
   chatter: number;
   /** Length of the step in which the event ahead was first seen. */
   approachFrom?: number;
+  /** The next step has the length that it is to have. */
+  exactStep: boolean;
   /** The event that the next step is meant to end on. */
   aim?: FoundEvent;
 }
@@ -109,6 +114,7 @@ export function marchInTime(
     lastError: 1e-2,
     lastStep: 0,
     chatter: 0,
+    exactStep: false,
   };
   stepper.newtonTolerance = Math.max((10 * 2.2e-16) / march.tolerance, Math.min(0.003, Math.sqrt(march.tolerance)));
   bindSegments(system, 0, corners[0]!);
@@ -241,10 +247,12 @@ function stepTo(march: March, end: number): void {
     let h = Math.min(march.h, longest);
     const left = end - march.t;
     let last = false;
-    if (h * 1.01 >= left) {
+    // a step that is meant to end at an event is not stretched to the end that lies just behind it
+    if (h * (march.exactStep ? 1 : 1.01) >= left) {
       h = left;
       last = true;
-    } else if (2 * h > left) h = left / 2;
+    } else if (2 * h > left && !march.exactStep) h = left / 2;
+    march.exactStep = false;
     setWeights(march);
     // refused by the simplified iteration, a step of some length is worth a full one
     let solved = solveStages(stepper, march.t, h, y);
@@ -297,7 +305,7 @@ function stepTo(march: March, end: number): void {
     }
     const event =
       system.modal.length > 0
-        ? (arrival(march, scratch) ?? findEvent(system, y, stepper.z, march.scale, scratch))
+        ? (arrival(march, scratch) ?? findEvent(system, y, stepper.z, relaxed(march), scratch))
         : undefined;
     if (event) {
       const landing = planLanding(march, event, h);
@@ -321,7 +329,7 @@ function stepTo(march: March, end: number): void {
     factor = Math.max(0.125, Math.min(rejected ? 1 : bold, factor));
     march.lastError = Math.max(1e-2, error);
     march.lastStep = h;
-    march.chatter = 0;
+    if (h > STANDSTILL * march.span) march.chatter = 0;
     accept(march, last ? end : march.t + h);
     if (!(last && h * factor < march.h)) march.h = h * factor;
     rejected = false;
@@ -449,6 +457,7 @@ function planLanding(march: March, event: FoundEvent, h: number): 'at the end' |
   const coarse =
     event.quantity === 'current' && needsProbe(march.system) && target > FINAL_APPROACH * march.approachFrom;
   march.h = coarse ? 0.97 * target : target;
+  march.exactStep = true;
   march.aim = coarse ? undefined : event;
   forgetHistory(march.stepper);
   return 'shorter';
@@ -474,6 +483,19 @@ const DERIVATIVE_ROUNDING = 1e-9;
 
 /** The last step before the zero of a derivative current, as a fraction of the step in which the zero was first seen. */
 const FINAL_APPROACH = 0.003;
+
+/** Events in a row without the time moving on, after which what is taken for rounding grows tenfold with every so many more. */
+const PATIENCE = 10;
+
+/**
+ * The scale that events are measured by. Where several devices hang in the balance at one instant (a bridge of ideal diodes at a zero of its source), rounding
+ * can send them back and forth: what counts as a crossing then grows until the time moves on.
+ */
+function relaxed(march: March): { voltage: number; current: number } {
+  if (march.chatter <= PATIENCE) return march.scale;
+  const factor = 10 ** ((march.chatter - PATIENCE) / PATIENCE);
+  return { voltage: march.scale.voltage * factor, current: march.scale.current * factor };
+}
 
 function takeEvent(march: March, event: FoundEvent): void {
   const { system, stepper } = march;

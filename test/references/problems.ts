@@ -228,6 +228,78 @@ function rectifiers(): NoteCase[] {
   });
 }
 
+/** Ideal diodes behind a source resistance, normalised: 1 V peak, 50 Hz, 1 kΩ load. */
+function rectifiersWithSourceResistance(): NoteCase[] {
+  const { source_resistance } = reference('06-rectifiers') as {
+    source_resistance: { [key: string]: number | boolean }[];
+  };
+  return source_resistance.map((value): NoteCase => {
+    const load = 1000;
+    const ohm = (value.Rs_over_R as number) * load;
+    const farad = (value.wCR as number) / (2 * Math.PI * 50 * load);
+    const components = value.full_wave
+      ? [
+          source(sine(1, 50), '[s, t]'),
+          resistor('RS', '[s, a]', ohm),
+          threshold('D1', '[a, out]', 0, 'diode'),
+          threshold('D2', '[t, out]', 0, 'diode'),
+          threshold('D3', '[gnd, a]', 0, 'diode'),
+          threshold('D4', '[gnd, t]', 0, 'diode'),
+        ]
+      : [source(sine(1, 50)), resistor('RS', '[line, a]', ohm), threshold('D1', '[a, out]', 0, 'diode')];
+    return {
+      name: `06 ${value.full_wave ? 'full' : 'half'} wave, ωCR ${value.wCR}, Rs/R ${value.Rs_over_R}`,
+      components: [...components, capacitor('C1', '[out, gnd]', farad), resistor('R1', '[out, gnd]', load)],
+      analysis: STEADY,
+      figures: {
+        mean_voltage: { is: 'mean(out)', reference: value.mean_over_Vp as number },
+        rectified_rms: {
+          is: 'rms(RS.i) / mean(abs(RS.i))',
+          reference: value.rms_over_mean_rectified_current as number,
+        },
+        rectified_peak: {
+          is: 'peak(RS.i) / mean(abs(RS.i))',
+          reference: value.peak_over_mean_rectified_current as number,
+        },
+      },
+    };
+  });
+}
+
+/** Exponential diodes behind a source resistance. */
+function exponentialRectifiers(): NoteCase[] {
+  const { exponential } = reference('06-rectifiers') as {
+    exponential: { [key: string]: { [key: string]: number | boolean | Numbers } & { results: Numbers } };
+  };
+  return Object.entries(exponential).map(([key, value]): NoteCase => {
+    const slope = (value.n as number) * VT_300;
+    const saturation = value.Is as number;
+    const wave = sine(value.Vp as number, value.f as number);
+    const components = value.full_wave
+      ? [
+          source(wave, '[s, t]'),
+          resistor('RS', '[s, a]', value.Rs as number),
+          diode('D1', '[a, out]', saturation, slope),
+          diode('D2', '[t, out]', saturation, slope),
+          diode('D3', '[gnd, a]', saturation, slope),
+          diode('D4', '[gnd, t]', saturation, slope),
+        ]
+      : [source(wave), resistor('RS', '[line, a]', value.Rs as number), diode('D1', '[a, out]', saturation, slope)];
+    const load = (value.R ?? value.RL ?? value.R_load) as number;
+    return {
+      name: `06 ${key}`,
+      components: [...components, capacitor('C1', '[out, gnd]', value.C as number), resistor('R1', '[out, gnd]', load)],
+      analysis: STEADY,
+      figures: {
+        mean_voltage: { is: 'mean(out)', reference: value.results.mean_V! },
+        rms_voltage: { is: 'rms(out)', reference: value.results.rms_V! },
+      },
+      // the bridge's reference leaves out the leakage of the two diodes that are off, some nanoamperes
+      known: 2e-8,
+    };
+  });
+}
+
 function operatingPoints(): NoteCase[] {
   const values = reference('11-operating-points') as { [key: string]: { [key: string]: number | Numbers } };
   const zener = values['zener_6.8V_5mA_20ohm_supply_500ohm'] as unknown as { [key: string]: Numbers };
@@ -316,6 +388,8 @@ export const PROBLEMS: readonly NoteCase[] = [
   ...diodeAndResistor(),
   ...linear(),
   ...rectifiers(),
+  ...rectifiersWithSourceResistance(),
+  ...exponentialRectifiers(),
   ...thresholdPair(),
   ...exponentialPair(),
   ...operatingPoints(),

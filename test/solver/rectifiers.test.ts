@@ -108,9 +108,6 @@ describe.each(halfWave)('ideal diode, source resistance: ωCR $wCR, Rs/R $Rs_ove
   });
 });
 
-// each chatters about the instant at which the floating load is taken over by the other pair
-test.todo('ideal diodes in a bridge, source resistance: the six full-wave rows of the reference');
-
 describe.each(Object.keys(references.exponential))('exponential diodes, %s', (name) => {
   const given = references.exponential[name];
   const { results, full_wave: full } = given;
