@@ -80,7 +80,10 @@ export function solveNewton(system: System, problem: StaticProblem, y: Float64Ar
   if (problem.rate !== 0) for (let s = 0; s < entries; s++) linear[s]! += problem.rate * system.storage[s]!;
   if (diagonal !== 0) for (let i = 0; i < nodes; i++) linear[diagonalSlot(system, i)]! += diagonal;
 
+  /** Ampere: the largest current of a law in the last residual. */
+  let lawCurrent = 0;
   const residual = (at: Float64Array, withJacobian: boolean): void => {
+    lawCurrent = 0;
     applyConductance(system, change, right);
     if (withJacobian) jacobian.set(linear);
     for (let i = 0; i < size; i++) right[i]! += base[i]! + drives[i]!;
@@ -95,6 +98,7 @@ export function solveNewton(system: System, problem: StaticProblem, y: Float64Ar
       const v = at[law.first]! - at[law.second]!;
       law.evaluate(point[k]!, result);
       const current = result[0]! + result[1]! * (v - point[k]!);
+      lawCurrent = Math.max(lawCurrent, Math.abs(current));
       right[law.plus]! += current;
       right[law.minus]! -= current;
       if (!withJacobian) continue;
@@ -128,7 +132,8 @@ export function solveNewton(system: System, problem: StaticProblem, y: Float64Ar
     update[size] = 0;
     solveFactored(factors, update);
     let largestVoltage = 0;
-    let largestCurrent = 0;
+    // a branch that carries next to nothing is known to the rounding of what its neighbours carry
+    let largestCurrent = lawCurrent;
     for (let i = 0; i < size; i++) {
       const magnitude = Math.abs(y[i]! - update[i]!);
       if (i < nodes) largestVoltage = Math.max(largestVoltage, magnitude);
