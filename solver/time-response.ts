@@ -4,7 +4,8 @@
  */
 import type { Effort, TimeResponseRequest } from './analysis.ts';
 import { NoSolution } from './analysis.ts';
-import { evaluateCurrents } from './equations/evaluate.ts';
+import { REFERENCE_TEMPERATURE } from './circuit.ts';
+import { applyStorage, evaluateCurrents } from './equations/evaluate.ts';
 import type { System } from './equations/system.ts';
 import { exitMargin, setMode } from './equations/system.ts';
 import { type FoundEvent, findEvent } from './integrator/events.ts';
@@ -17,7 +18,7 @@ import {
   solveStagesRobustly,
 } from './integrator/radau-step.ts';
 import { createRecorder, type Recorder, recordStep } from './integrator/recorder.ts';
-import { leakAcrossJunctions, needsProbe, restart, unsettled } from './integrator/restart.ts';
+import { type ChargesToReach, leakAcrossJunctions, needsProbe, restart, unsettled } from './integrator/restart.ts';
 import { findOperatingPoint, type StaticContext, unknownScale } from './operating-point.ts';
 import { highestAngularFrequency, segmentAt, waveCorners } from './wave-evaluation.ts';
 import { lagrangeWeights } from './waveform/waveform.ts';
@@ -85,6 +86,20 @@ interface March {
   aim?: FoundEvent;
 }
 
+/** The charges that a given start lacks, as a march is told to reach them. */
+function chargesToReach(system: System, { y, missing }: GivenStart): ChargesToReach | undefined {
+  if (!missing) return undefined;
+  const held = new Float64Array(system.size + 1);
+  applyStorage(system, y, held);
+  const target = missing.map((value, i) => value + held[i]!);
+  const lacking = (at: Float64Array): Float64Array => {
+    applyStorage(system, at, held);
+    return target.map((value, i) => (i < system.size ? value - held[i]! : 0));
+  };
+  // what is left below this is the rounding of charges
+  return { lacking, shortest: 1e-11 };
+}
+
 /** `accuracy` is the relative accuracy that figures must keep. */
 export function marchInTime(
   system: System,
@@ -124,7 +139,7 @@ export function marchInTime(
       setMode(system, k, mode);
     });
   }
-  restart(stepper, 0, until, given ? given.missing : startingCharges(march, request), y, march.context);
+  restart(stepper, 0, until, given ? chargesToReach(system, given) : startingCharges(march, request), y, march.context);
   updateScale(march);
   for (const [k, corner] of corners.entries()) {
     if (k > 0) enterSegment(march, corners[k - 1]!, corner);
@@ -154,7 +169,7 @@ function bindSegments(system: System, begin: number, end: number): void {
 }
 
 /** Sets `y` to what the response starts from; returns the charges and fluxes by row that it still lacks. */
-function startingCharges(march: March, request: TimeResponseRequest): Float64Array | undefined {
+function startingCharges(march: March, request: TimeResponseRequest): ChargesToReach | undefined {
   const { system, y, context } = march;
   const { start } = request;
   if (start === 'operating point') {
@@ -164,24 +179,41 @@ function startingCharges(march: March, request: TimeResponseRequest): Float64Arr
     return undefined;
   }
   if (start === 'rest') return undefined;
-  const stored = new Float64Array(system.size + 1);
+  return { lacking: (at) => chargesLacking(system, start, at), shortest: 1e-14 };
+}
+
+/**
+ * Charges and fluxes by row by which the vector misses the stated voltages and currents (zero where none is stated). What one plate lacks the other has too much of, to
+ * the last bit, so that no rounding drives a current through the rest of the circuit.
+ */
+function chargesLacking(
+  system: System,
+  start: { readonly [designator: string]: number },
+  y: Float64Array,
+): Float64Array {
+  const lacking = new Float64Array(system.size + 1);
   for (const component of system.circuit.components) {
-    const value = start[component.designator];
-    if (value === undefined) continue;
-    if (component.kind === 'capacitor') {
+    const stated = start[component.designator] ?? 0;
+    const branch = system.branchIndex.get(component.designator);
+    const scale =
+      1 +
+      ('temperatureCoefficient' in component ? (component.temperatureCoefficient ?? 0) : 0) *
+        (system.circuit.temperature - REFERENCE_TEMPERATURE);
+    if (component.kind === 'inductor') {
+      lacking[branch!]! -= component.inductance * scale * (stated - y[branch!]!);
+    } else if (component.kind === 'capacitor') {
       const first = system.nodeIndex.get(component.nodes[0])!;
       const second = system.nodeIndex.get(component.nodes[1])!;
-      const branch = system.branchIndex.get(component.designator);
-      const charge = component.capacitance * value;
-      if (branch === undefined) {
-        stored[first]! += charge;
-        stored[second]! -= charge;
-      } else stored[branch]! -= charge;
-    } else if (component.kind === 'inductor') {
-      stored[system.branchIndex.get(component.designator)!]! -= component.inductance * value;
+      const charge = component.capacitance * scale * (stated - (y[first]! - y[second]!));
+      if (branch !== undefined) lacking[branch]! -= charge;
+      else {
+        // the reference and driven nodes hold whatever charge they are asked to
+        if (first < system.size) lacking[first]! += charge;
+        if (second < system.size) lacking[second]! -= charge;
+      }
     }
   }
-  return stored;
+  return lacking;
 }
 
 function enterSegment(march: March, begin: number, end: number): void {

@@ -16,14 +16,14 @@ const TINY = 1e-15;
 const PROBE = 1e-5;
 
 /**
- * Makes `y` consistent at `t` with the charges and fluxes that it holds, plus those in `missing` (by row, n + 1 elements). `span` is the time scale
+ * Makes `y` consistent at `t` with the charges and fluxes that it holds, or with those that it is to reach. `span` is the time scale
  * of the analysis in seconds. The currents of ideal loops (a capacitor across sources) are derivatives: a probing step finds them.
  */
 export function restart(
   stepper: Stepper,
   t: number,
   span: number,
-  missing: Float64Array | undefined,
+  toReach: ChargesToReach | undefined,
   y: Float64Array,
   context: StaticContext,
 ): void {
@@ -31,7 +31,7 @@ export function restart(
   const tiny = TINY * span;
   const limit = 8 * system.modal.length + 64;
   const idealLoops = needsProbe(system);
-  if (missing) approachCharges(stepper, t, span, missing, y, context);
+  if (toReach) approachCharges(stepper, t, span, toReach, y, context);
   const before = y.slice();
   for (let attempt = 0; attempt <= limit; attempt++) {
     const takeFirst = attempt > 2 * system.modal.length + 4;
@@ -70,30 +70,29 @@ export function restart(
   }
 }
 
-/** Lengths of the backward steps, as fractions of `span`, by which stated charges are approached. */
-const APPROACH = [1e-6, 1e-11];
+/** Charges and fluxes that a march is to start with. */
+export interface ChargesToReach {
+  /** What a vector lacks of them, by row (n + 1 elements). */
+  readonly lacking: (y: Float64Array) => Float64Array;
+  /** Fraction of the span of the shortest step for which `lacking` means more than rounding. */
+  readonly shortest: number;
+}
 
-/**
- * Moves y to charges far from its own, in steps that shorten: each leaves so much less to be moved. What the last leaves is dropped: over a shorter step, its
- * rounding would drive currents of its own.
- */
+/** Lengths of the backward steps, as fractions of `span`, by which stated charges are approached. */
+const APPROACH = [1e-6, 1e-10, 1e-12, 1e-14];
+
+/** Moves y to charges far from its own, in steps that shorten: each leaves so much less to be moved, and its rounding with it. */
 function approachCharges(
   stepper: Stepper,
   t: number,
   span: number,
-  missing: Float64Array,
+  { lacking, shortest }: ChargesToReach,
   y: Float64Array,
   context: StaticContext,
 ): void {
-  const { system } = stepper;
-  const held = new Float64Array(system.size + 1);
-  applyStorage(system, y, held);
-  const target = missing.map((value, i) => value + held[i]!);
-  let lacking = missing;
   for (const fraction of APPROACH) {
-    holdCharges(stepper, t, fraction * span, lacking, y, context);
-    applyStorage(system, y, held);
-    lacking = target.map((value, i) => (i < system.size ? value - held[i]! : 0));
+    if (fraction < shortest) return;
+    holdCharges(stepper, t, fraction * span, lacking(y), y, context);
   }
 }
 
@@ -139,7 +138,11 @@ function holdCharges(
     stepper.worst = outcome.singularColumns?.[0] ?? outcome.worst;
     return outcome.converged;
   };
-  if (attempt(false)) return;
+  // over the shortest step, the rounding of charges may drive currents that keep potentials from settling
+  for (const factor of [1, 100, 10_000]) {
+    y.set(guess);
+    if (attempt(false, factor * tiny)) return;
+  }
   // what a leak alone holds must not be lost in the rounding of charges over the step
   const longer = LONGER * tiny;
   if (system.modal.length > 0) {
