@@ -22,6 +22,7 @@ import {
   threshold,
   timeSwitch,
   VT_300,
+  voltageSwitch,
 } from './circuits.ts';
 
 const linear = reference('05-linear-responses');
@@ -430,6 +431,16 @@ describe('no solution', () => {
       controlled('A1', 'x', 'gnd', 'current', ['in', 'gnd'], 1e-3),
     );
     expect(details.reason).toMatch(/[xyz]/);
+  });
+
+  test('a contact that its own closing opens again finds no state, and the search ends', () => {
+    const { details } = refusal(
+      source('G1', 'in', 'gnd', 4.7),
+      resistor('R1', 'in', 'a', 5600),
+      voltageSwitch('S1', 'a', 'gnd', ['a', 'gnd'], 3, 1, { onResistance: 10 }),
+    );
+    expect(details.component).toBe('S1');
+    expect(details.reason).toMatch(/S1/);
   });
 
   test('a positive feedback without a fixed point', () => {
