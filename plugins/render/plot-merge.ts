@@ -1,11 +1,13 @@
 /** The author's `vega:` (checked when the note was read) merged into a plot's specification. */
+import { refuseHidden } from './plot-guard.ts';
 import type { Json } from './plot-spec.ts';
 
 /**
  * `encoding` and `mark` go into every layer that draws lines, `layer` is drawn over what is there; mappings are merged,
- * anything else takes the place of what was there.
+ * anything else takes the place of what was there. Throws where a property would evaluate code or open an address.
  */
 export function mergeAuthorSpecification(specification: Json, author: Json): Json {
+  refuseHidden(author);
   const { encoding, mark, layer, ...others } = author;
   const own = (specification.layer as readonly Json[]).map((each) => {
     const type = isObject(each.mark) ? each.mark.type : each.mark;

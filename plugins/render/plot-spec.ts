@@ -1,7 +1,7 @@
 /** A plot as a Vega-Lite specification, colours standing in for style sheet variables. */
 import type { Curve, SolvedPlot } from '../results.ts';
 import { typographicWords } from './number-text.ts';
-import { curveName, drawnPoints } from './plot-data.ts';
+import { curveName, type DrawnPoint, drawnPoints, type Extent, extentOf } from './plot-data.ts';
 import { DASHES, SERIES_COUNT } from './plot-palette.ts';
 
 export const SCHEMA = 'https://vega.github.io/schema/vega-lite/v6.json';
@@ -27,6 +27,11 @@ export const FONT = 'Seravek, "Segoe UI", "Noto Sans", "Liberation Sans", Arial,
 const QUANTITIES: { readonly [unit: string]: string } = {
   V: 'voltage',
   A: 'current',
+  F: 'capacitance',
+  H: 'inductance',
+  S: 'conductance',
+  '°C': 'temperature',
+  K: 'temperature',
   W: 'power',
   C: 'charge',
   J: 'energy',
@@ -51,30 +56,44 @@ export function plotSpecification(plot: SolvedPlot): Json {
   const dash = {
     field: 'series',
     type: 'nominal',
-    scale: { domain: names, range: names.map((_, k) => DASHES[k % DASHES.length]) },
+    scale: { domain: names, range: names.map((_, k) => dashOf(k)) },
     legend: names.length > 1 ? { title: null } : null,
   };
+  const drawn = new Map(plot.curves.map((curve) => [curve, drawnPoints(curve, plot)]));
+  const across = extentOf([...drawn.values()].flatMap((points) => points.map(({ x }) => x)));
   const horizontal = {
     field: 'x',
     type: 'quantitative',
-    scale: { zero: false, nice: false },
-    axis: { title: axisTitle(plot.horizontal.label, plot.horizontal.unit), grid: true },
+    scale: { zero: false, nice: false, ...levelDomain(across) },
+    axis: { title: axisTitle(plot.horizontal.label, plot.horizontal.unit), grid: true, ...tickFormat(across) },
   };
-  const lines = (curves: readonly Curve[], orient: 'left' | 'right'): Json => ({
+  const lines = (curves: readonly Curve[], orient: 'left' | 'right'): Json => {
+    const up = extentOf(curves.flatMap((curve) => drawn.get(curve)!.map(({ y }) => y)));
+    return layerOf(curves, orient, up);
+  };
+  const layerOf = (curves: readonly Curve[], orient: 'left' | 'right', up: Extent | undefined): Json => ({
     data: {
       values: curves.flatMap((curve) =>
-        drawnPoints(curve, plot).map(({ x, y }, order) => ({ x, y, series: names[plot.curves.indexOf(curve)], order })),
+        drawn.get(curve)!.map(({ x, y }, order) => ({ x, y, series: names[plot.curves.indexOf(curve)], order })),
       ),
     },
-    mark: { type: 'line', strokeWidth: 1.6, strokeJoin: 'round', invalid: 'break-paths-filter-domains' },
+    mark: {
+      type: 'line',
+      strokeWidth: 1.6,
+      strokeJoin: 'round',
+      invalid: 'break-paths-filter-domains',
+      // a line of one point has no length to be seen by
+      ...(curves.some((curve) => isOnePoint(drawn.get(curve)!)) ? { point: { filled: true, size: 30 } } : {}),
+    },
     encoding: {
       x: horizontal,
       y: {
         field: 'y',
         type: 'quantitative',
-        scale: { zero: false },
+        scale: { zero: false, ...levelDomain(up) },
         axis: {
           orient,
+          ...tickFormat(up),
           title: axisTitle(quantityOf(curves), curves[0]!.unit),
           grid: orient === 'left' || left.length === 0,
         },
@@ -122,6 +141,8 @@ const LEGEND: Json = {
 const CONFIG: Json = {
   font: FONT,
   view: { stroke: null },
+  // digits are not grouped, as in the tables
+  locale: { number: { decimal: '.', thousands: '', grouping: [3], currency: ['', ''] } },
   axis: {
     labelFontSize: 11,
     titleFontSize: 11.5,
@@ -175,6 +196,30 @@ function spanLayers(plot: SolvedPlot): Json[] {
   ];
 }
 
+/** What was drawn before in a colour gets another dash when the colours are through. */
+function dashOf(series: number): readonly number[] {
+  return DASHES[(series + Math.floor(series / SERIES_COUNT)) % DASHES.length]!;
+}
+
+/** Room around a level line, whose range is nothing; where there is nothing at all, an axis to be seen. */
+function levelDomain(extent: Extent | undefined): Json {
+  if (extent === undefined) return { domain: [0, 1] };
+  if (extent.least < extent.greatest) return {};
+  const room = extent.least === 0 ? 1 : Math.abs(extent.least) / 10;
+  return { domain: [extent.least - room, extent.least + room] };
+}
+
+/** Powers of ten where a unit was asked for that does not fit the values. */
+function tickFormat(extent: Extent | undefined): Json {
+  const size = extent === undefined ? 0 : Math.max(Math.abs(extent.least), Math.abs(extent.greatest));
+  return size >= 1e5 || (size > 0 && size < 1e-3) ? { format: '~e' } : {};
+}
+
+function isOnePoint(points: readonly DrawnPoint[]): boolean {
+  const seen = points.filter(({ y }) => y !== null);
+  return seen.length > 0 && seen.every(({ x, y }) => x === seen[0]!.x && y === seen[0]!.y);
+}
+
 /** The form of ISO 80000-1: a quantity divided by its unit. */
 function axisTitle(quantity: string, unit: string): string {
   return unit === '' ? quantity : `${quantity} / ${unit}`;
@@ -184,7 +229,7 @@ function axisTitle(quantity: string, unit: string): string {
 function quantityOf(curves: readonly Curve[]): string {
   const labels = new Set(curves.map(({ label }) => label));
   if (labels.size === 1) return [...labels][0]!;
-  const unit = curves[0]!.unit.replace(/^[TGMkmµnpfa](?=[A-ZΩ])/, '');
+  const unit = curves[0]!.unit.replace(/^[TGMkmµnpfa](?=[A-ZΩ]|s$)/, '');
   return QUANTITIES[unit] ?? 'value';
 }
 

@@ -3,11 +3,15 @@ import * as vega from 'vega';
 import { compile, type TopLevelSpec } from 'vega-lite';
 import type { SolvedPlot } from '../results.ts';
 import { escapeHtml } from './html.ts';
-import { typographicWords } from './number-text.ts';
-import { curveName, drawnPoints, plotCsv, shortNumber, type ValueTable, valueTable } from './plot-data.ts';
+import { describePlot } from './plot-description.ts';
+import { opensAddress } from './plot-guard.ts';
 import { mergeAuthorSpecification } from './plot-merge.ts';
 import { PLOT_PALETTE } from './plot-palette.ts';
 import { FONT, type Json, plotSpecification, STAND_INS } from './plot-spec.ts';
+import { plotCsv, powerOfTen, type ValueTable, valueTable } from './plot-table.ts';
+
+const STAND_IN = /#010[ab]0\d/g;
+const VARIABLES = new Map(Object.entries(STAND_INS).map(([variable, standIn]) => [standIn, variable]));
 
 export interface RenderedPlot {
   readonly svg: string;
@@ -24,7 +28,7 @@ export async function renderPlot(plot: SolvedPlot, options: { readonly id: strin
   const warnings: string[] = [];
   const own = plotSpecification(plot);
   const specification = plot.block.vega ? mergeAuthorSpecification(own, plot.block.vega) : own;
-  const description = describe(plot);
+  const description = describePlot(plot);
   const drawing = await draw(specification, warnings);
   const title = plot.block.title ?? 'Plot';
   return {
@@ -84,50 +88,33 @@ function dress(svg: string, id: string, title: string, description: string): str
     // labels that would overlap others are there all the same, unseen
     .replace(/<text[^>]* opacity="0"[^>]*>[^<]*<\/text>/g, '')
     .replace(/<path class="foreground" d=""[^>]*\/>/g, '')
-    .replace(/<[^>]*>/g, (tag) => dressTag(tag, id));
-  const coloured = withColours(inner, (variable) => `var(${variable})`);
+    .replace(/<[^>]*>/g, (tag) => dressTag(tag, id))
+    .replace(/>(\u2212?[\d.]+)e([+-]\d+)</g, (_, mantissa: string, exponent: string) => {
+      return `>${powerOfTen(mantissa, exponent)}<`;
+    });
   return (
     `<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 ${width} ${height}" width="${width}" height="${height}" font-family="${escapeHtml(FONT)}" role="img" aria-labelledby="${id}-title ${id}-desc">` +
-    `<title id="${id}-title">${escapeHtml(title)}</title><desc id="${id}-desc">${escapeHtml(description)}</desc>${coloured}`
+    `<title id="${id}-title">${escapeHtml(title)}</title><desc id="${id}-desc">${escapeHtml(description)}</desc>${inner}`
   );
 }
 
-/** One tag of the drawing: ids get their prefix, and what the page does not need goes. */
+/** One tag of the drawing: ids get their prefix, colours their variables (a light page's where no style is), and what the page does not need goes. */
 function dressTag(tag: string, id: string): string {
-  return (
-    tag
-      .replace(/(\bid=")([^"]*")/g, `$1${id}-$2`)
-      .replace(/url\(#([^)]*)\)/g, `url(#${id}-$1)`)
-      .replace(/(href="#)([^"]*")/g, `$1${id}-$2`)
-      // roles and labels of the parts would be read out one by one: the description says it in a sentence
-      .replace(/ (?:role|aria-[a-z]+|class|pointer-events)="[^"]*"/g, '')
-      .replace(/ opacity="1"/g, '')
-      .replace(` font-family="${escapeHtml(FONT)}"`, '')
-  );
+  const dressed = tag
+    .replace(/(\bid=")([^"]*")/g, `$1${id}-$2`)
+    .replace(/url\(#([^)]*)\)/g, `url(#${id}-$1)`)
+    .replace(/(href="#)([^"]*")/g, `$1${id}-$2`)
+    // roles and labels of the parts would be read out one by one: the description says it in a sentence
+    .replace(/ (?:role|aria-[a-z]+|class|pointer-events)="[^"]*"/g, '')
+    .replace(/ (?:opacity="1"|stroke-dasharray="")/g, '')
+    .replace(` font-family="${escapeHtml(FONT)}"`, '');
+  if (opensAddress(dressed)) throw new Error('a colour opens an address');
+  return withColours(dressed, (variable) => `var(${variable}, ${PLOT_PALETTE[variable]!.light})`);
 }
 
 function withColours(text: string, replacement: (variable: string) => string): string {
-  let result = text;
-  for (const [variable, standIn] of Object.entries(STAND_INS))
-    result = result.replaceAll(standIn, replacement(variable));
-  return result;
-}
-
-function describe(plot: SolvedPlot): string {
-  const ranges = plot.curves.map((curve) => {
-    let least = Number.POSITIVE_INFINITY;
-    let greatest = Number.NEGATIVE_INFINITY;
-    for (const { y } of drawnPoints(curve, plot)) {
-      if (y === null) continue;
-      least = Math.min(least, y);
-      greatest = Math.max(greatest, y);
-    }
-    const unit = curve.unit === '' ? '' : ` ${curve.unit}`;
-    return `${typographicWords(curveName(curve))} from ${shortNumber(least)}${unit} to ${shortNumber(greatest)}${unit}`;
+  return text.replace(STAND_IN, (standIn) => {
+    const variable = VARIABLES.get(standIn);
+    return variable === undefined ? standIn : replacement(variable);
   });
-  const marks = [...new Set(plot.spans.map(({ label }) => label))];
-  return (
-    `${plot.curves.length === 1 ? 'A curve' : `${plot.curves.length} curves`} over ${plot.horizontal.label}: ${ranges.join('; ')}.` +
-    (marks.length > 0 ? ` Shaded: ${marks.join(', ')}.` : '')
-  );
 }

@@ -1,9 +1,10 @@
 /** Drawings of plots. Shapes are checked on hand-made waveforms. */
 import { describe, expect, test } from 'vitest';
 import { renderPlot } from '../../../plugins/render/plot.ts';
-import { drawnPoints, plotCsv, valueTable } from '../../../plugins/render/plot-data.ts';
+import { drawnPoints } from '../../../plugins/render/plot-data.ts';
 import { PLOT_PALETTE } from '../../../plugins/render/plot-palette.ts';
 import { plotSpecification } from '../../../plugins/render/plot-spec.ts';
+import { plotCsv, valueTable } from '../../../plugins/render/plot-table.ts';
 import type { Curve, SolvedPlot } from '../../../plugins/results.ts';
 import { unbalanced } from './notes.ts';
 
@@ -74,10 +75,10 @@ describe('a drawing', () => {
 
   test('takes its colours from the style sheet, and has no background', async () => {
     const { svg, spec } = await renderPlot(plotOf([curve('a', TRIANGLE), curve('b', TRIANGLE)]), { id: 'p' });
-    expect(svg).toContain('stroke="var(--plot-series-1)"');
-    expect(svg).toContain('stroke="var(--plot-series-2)"');
+    expect(svg).toContain('stroke="var(--plot-series-1, ');
+    expect(svg).toContain('stroke="var(--plot-series-2, ');
     for (const [, colour] of svg.matchAll(/(?:fill|stroke)="([^"]*)"/g)) {
-      expect(colour).toMatch(/^(var\(--plot-[a-z0-9-]+\)|none|transparent)$/);
+      expect(colour).toMatch(/^(var\(--plot-[a-z0-9-]+, #[0-9a-f]{6}\)|none|transparent)$/);
     }
     // the specification stands alone: real colours
     expect(JSON.stringify(spec)).toContain(PLOT_PALETTE['--plot-series-1']!.light);
@@ -109,7 +110,7 @@ describe('a drawing', () => {
   test('shades stretches and says what they are', async () => {
     const plot = { ...plotOf([curve('a', TRIANGLE)]), spans: [{ label: 'dead', from: 0.004, to: 0.006 }] };
     const { svg, description } = await renderPlot(plot, { id: 'p' });
-    expect(svg).toContain('fill="var(--plot-span)"');
+    expect(svg).toContain('fill="var(--plot-span, ');
     expect(svg).toContain('>dead</text>');
     expect(description).toContain('Shaded: dead.');
   });
@@ -124,6 +125,112 @@ describe('a drawing', () => {
     expect(svg).not.toMatch(/<script|<b>/);
     for (const [tag] of svg.matchAll(/<[a-z][^>]*>/g)) expect(tag).not.toMatch(/\sonload=/);
     expect(unbalanced(svg)).toBeUndefined();
+  });
+
+  test('ends neither a section of characters nor a style, and a label may look like an address', async () => {
+    const hostile = ']]></svg><style>*{display:none}</style> url(https://example.org/) #010a01';
+    const { svg } = await renderPlot(plotOf([curve(hostile, TRIANGLE), curve('b', TRIANGLE)], { title: hostile }), {
+      id: 'p',
+    });
+    expect(svg).not.toMatch(/]]><|<style|<\/svg>.*<\/svg>/);
+    expect(svg).toContain('#010a01</text>');
+    expect(unbalanced(svg)).toBeUndefined();
+  });
+
+  test('loads nothing and runs nothing', async () => {
+    const plot = { ...plotOf([curve('a', TRIANGLE)]), spans: [{ label: 'dead', from: 0, to: 0.001 }] };
+    const { svg } = await renderPlot(plot, { id: 'p' });
+    expect(svg).not.toMatch(/<script|<image|<foreignObject|href=|url\((?!#)|\son[a-z]+=/);
+  });
+
+  test('curves of one colour differ in their dashes', async () => {
+    const many = Array.from({ length: 20 }, (_, k) => curve(`curve ${k}`, TRIANGLE));
+    const { svg } = await renderPlot(plotOf(many), { id: 'p' });
+    const looks = new Map<string, number>();
+    for (const [path] of svg.matchAll(/<path[^>]*stroke-width="1.6"[^>]*>/g)) {
+      const look = `${/stroke="[^"]*"/.exec(path)} ${/stroke-dasharray="[^"]*"/.exec(path)}`;
+      looks.set(look, (looks.get(look) ?? 0) + 1);
+    }
+    expect([...looks.values()]).toEqual(Array(20).fill(1));
+  });
+
+  test.each([
+    [
+      'a level line',
+      [
+        [0, 5],
+        [0.02, 5],
+      ],
+      'at 5 V',
+    ],
+    [
+      'zero throughout',
+      [
+        [0, 0],
+        [0.02, 0],
+      ],
+      'at 0 V',
+    ],
+    [
+      'a single point',
+      [
+        [0.01, 5],
+        [0.01, 5],
+      ],
+      'at 5 V',
+    ],
+    [
+      'very small values',
+      [
+        [0, 0],
+        [0.02, 1e-12],
+      ],
+      'from 0 V to 1·10⁻¹² V',
+    ],
+    [
+      'very large values',
+      [
+        [0, -1e12],
+        [0.02, 1e12],
+      ],
+      'from \u22121·10¹² V to 1·10¹² V',
+    ],
+  ] as const)('%s has axes that can be read', async (_, points, words) => {
+    const { svg, description, warnings } = await renderPlot(plotOf([curve('a', points)]), { id: 'p' });
+    expect(description).toBe(`A curve over time: a ${words}.`);
+    expect(warnings).toEqual([]);
+    const texts = [...svg.matchAll(/<text[^>]*>([^<]*)<\/text>/g)].map(([, text]) => text!);
+    expect(texts.length).toBeGreaterThan(8);
+    // neither a row of zeros nor a power in the notation of programs
+    for (const text of texts) expect(text).not.toMatch(/\d{6}|\de[+-]/);
+    // the line itself: a path with two points, or a dot
+    expect(svg).toMatch(/<path[^>]*d="M[^"]*[LA][^"]*"[^>]*(?:stroke|fill)="var\(--plot-series-1/);
+  });
+
+  test('a curve without a single value leaves an empty plot', async () => {
+    const nothing = curve('a', TRIANGLE, {
+      waveform: { grid: Float64Array.of(0, 1), values: new Float64Array(4).fill(Number.NaN) },
+    });
+    const { svg, description, warnings, csv } = await renderPlot(plotOf([nothing]), { id: 'p' });
+    expect(description).toBe('A curve over time: a without a value.');
+    expect(warnings).toEqual([]);
+    expect(svg).not.toContain('NaN');
+    expect(csv).not.toContain('NaN');
+  });
+
+  test('many curves are described by their families', async () => {
+    const family = Array.from({ length: 9 }, (_, k) =>
+      curve(
+        'v',
+        [
+          [0, 0],
+          [1, k + 1],
+        ],
+        { conditions: [{ name: 'C1', text: `${k + 1} µF`, value: k }] },
+      ),
+    );
+    const { description } = await renderPlot(plotOf(family), { id: 'p' });
+    expect(description).toBe('9 curves over time: v, from C1 = 1 µF to C1 = 9 µF, from 0 V to 9 V.');
   });
 
   test('curves that do not exist everywhere are interrupted', async () => {
@@ -156,6 +263,68 @@ describe('properties of the author', () => {
     await expect(renderPlot(plotOf([curve('a', TRIANGLE)], { vega: { layer: [5] } }), { id: 'p' })).rejects.toThrow();
   });
 
+  test.each([
+    ['a text among conditions', { encoding: { color: { condition: { test: { and: ['warn(1)'] }, value: 'red' } } } }],
+    [
+      'a text as a condition',
+      { encoding: { x: { axis: { labelColor: { condition: { test: '1', value: 'red' } } } } } },
+    ],
+    ['a text negated', { encoding: { opacity: { condition: { test: { or: [{ not: 'warn(1)' }] }, value: 1 } } } }],
+    ['a function as a format', { encoding: { x: { axis: { formatType: 'warn' } } } }],
+    ['functions as formats', { config: { customFormatTypes: true } }],
+    ['a format of data', { layer: [{ data: { values: [], format: { parse: { y: "date:'%d'+warn(1)+'" } } } }] }],
+    ['a part of a date', { encoding: { x: { axis: { values: [{ year: 'warn(1)' }] } } } }],
+    ['a step', { encoding: { x: { timeUnit: { unit: 'year', step: 'warn(1)' } } } }],
+    ['a colour from elsewhere', { title: { text: 'a', color: 'url(https://example.org/a.svg#b)' } }],
+    [
+      'a colour from elsewhere in data',
+      {
+        layer: [
+          {
+            data: { values: [{ c: 'url(//example.org/a.svg#b)', y: 5 }] },
+            mark: 'rule',
+            encoding: {
+              y: { field: 'y', type: 'quantitative' },
+              color: { field: 'c', type: 'nominal', scale: null },
+            },
+          },
+        ],
+      },
+    ],
+  ])('that would run code or open an address are refused: %s', async (_, vega) => {
+    await expect(renderPlot(plotOf([curve('a', TRIANGLE)], { vega }), { id: 'p' })).rejects.toThrow(
+      /is refused here|opens an address/,
+    );
+  });
+
+  test('with conditions on fields are drawn', async () => {
+    const vega = {
+      encoding: {
+        opacity: {
+          condition: {
+            test: {
+              and: [
+                { field: 'x', lt: 5 },
+                { field: 'y', gt: 0 },
+              ],
+            },
+            value: 0.5,
+          },
+          value: 1,
+        },
+      },
+      layer: [
+        {
+          data: { values: [{ y: 5, parse: 'free (text)', step: 'a+b' }] },
+          mark: 'rule',
+          encoding: { y: { field: 'y', type: 'quantitative' } },
+        },
+      ],
+    };
+    const { warnings } = await renderPlot(plotOf([curve('a', TRIANGLE)], { vega }), { id: 'p' });
+    expect(warnings).toEqual([]);
+  });
+
   test('cannot change what all plots share', () => {
     const vega = JSON.parse('{"config": {"__proto__": {"polluted": 1}}}') as { [key: string]: unknown };
     plotSpecification(plotOf([curve('a', TRIANGLE)], { vega }));
@@ -181,6 +350,76 @@ describe('the numbers of a plot', () => {
     expect(lines[0]).toBe('time (ms),"a, ""b"" (V)", =1+1 (mV)');
     expect(lines).toContain('5,10,10000');
     expect(lines.at(-1)).toBe('');
+  });
+
+  test('CSV: a jump is a row before and a row after', () => {
+    const waveform = { grid: Float64Array.of(0, 0.005, 0.02), values: Float64Array.of(0, 0, 0, 0, 10, 10, 10, 10) };
+    const plot = plotOf([curve('a', TRIANGLE, { waveform })]);
+    expect(plotCsv(plot).split('\r\n').slice(1)).toEqual(['0,0', '5,0', '5,10', '20,10', '']);
+  });
+
+  test('CSV: curves with points of their own have values at all of them', () => {
+    const plot = plotOf([
+      curve('a', TRIANGLE),
+      curve('b', [
+        [0, 0],
+        [0.01, 4],
+        [0.02, 0],
+      ]),
+    ]);
+    // at 5 ms b is half way up to 4; at 10 ms a passes zero; at 15 ms b is half way down
+    expect(plotCsv(plot).split('\r\n').slice(1)).toEqual(['0,0,0', '5,10,2', '10,0,4', '15,-10,2', '20,0,0', '']);
+  });
+
+  test('CSV: where a curve has no value the cell is empty', () => {
+    const { grid, values } = polyline(TRIANGLE);
+    values.fill(Number.NaN, 4, 8);
+    const plot = plotOf([curve('a', TRIANGLE, { waveform: { grid, values } }), curve('b', TRIANGLE)]);
+    expect(plotCsv(plot).split('\r\n')).toContain('5,,10');
+  });
+
+  test('a small ripple on a large value keeps its shape', () => {
+    const ripple = curve('a', [
+      [0, 5],
+      [0.01, 5.000001],
+      [0.02, 5.0000004],
+    ]);
+    const plot = plotOf([ripple]);
+    expect(drawnPoints(ripple, plot).map(({ y }) => y)).toEqual([5, 5.000001, 5.0000004]);
+    expect(plotCsv(plot)).toContain('10,5.000001\r\n20,5.0000004');
+  });
+
+  test('one quantity against another: extremes of both are kept, and each run has its own', () => {
+    const points = Array.from({ length: 20_001 }, (_, k): [number, number] => [k / 20_000, Math.sin(k / 7)]);
+    const aside = points.map(([x, y]): [number, number] => [x, y / 2]);
+    points[12_345]![1] = 40;
+    aside[7_003]![1] = -9;
+    const against = polyline(aside);
+    const conditions = (text: string) => [{ name: 'C1', text, value: 1 }];
+    const curves = [
+      curve('i', points, { against, conditions: conditions('1 µF') }),
+      curve('i', points, {
+        against: polyline([
+          [0, 1],
+          [1, 3],
+        ]),
+        conditions: conditions('2 µF'),
+      }),
+    ];
+    const plot = { ...plotOf(curves), horizontal: { label: 'v', unit: 'V', scale: 1 } };
+    const drawn = drawnPoints(curves[0]!, plot);
+    expect(Math.max(...drawn.map(({ y }) => y!))).toBe(40);
+    expect(Math.min(...drawn.map(({ x }) => x))).toBe(-9);
+    const { columns, rows } = valueTable(plot);
+    expect(columns).toEqual([
+      'parameter',
+      'v, C1 = 1 µF (V)',
+      'v, C1 = 2 µF (V)',
+      'i, C1 = 1 µF (V)',
+      'i, C1 = 2 µF (V)',
+    ]);
+    // half way along the axis a straight line from 1 to 3 is at 2
+    expect(rows[6]![2]).toBe('2');
   });
 
   test('a table of a dozen steps from end to end', () => {
