@@ -203,8 +203,12 @@ describe('a drawing', () => {
     expect(texts.length).toBeGreaterThan(8);
     // neither a row of zeros nor a power in the notation of programs
     for (const text of texts) expect(text).not.toMatch(/\d{6}|\de[+-]/);
-    // the line itself: a path with two points, or a dot
-    expect(svg).toMatch(/<path[^>]*d="M[^"]*[LA][^"]*"[^>]*(?:stroke|fill)="var\(--plot-series-1/);
+    // the line itself, or a dot: a line of one point has no length
+    const drawing =
+      points[0][0] === points[1][0]
+        ? /<path[^>]*d="M[^"]*A[^"]*"[^>]*fill="var\(--plot-series-1/
+        : /<path[^>]*d="M[^"]*L[^"]*"[^>]*stroke="var\(--plot-series-1/;
+    expect(svg).toMatch(drawing);
   });
 
   test('a curve without a single value leaves an empty plot', async () => {
@@ -437,19 +441,95 @@ describe('the numbers of a plot', () => {
 test.each(['light', 'dark'] as const)('colours of plots stand out from a %s page', (theme) => {
   const paper = { light: '#fbfaf7', dark: '#14181d' }[theme];
   for (const [name, colours] of Object.entries(PLOT_PALETTE)) {
-    if (name.startsWith('--plot-series')) expect(contrast(colours[theme], paper), name).toBeGreaterThan(3);
+    if (name.startsWith('--plot-series')) {
+      for (const ground of [paper, PLOT_PALETTE['--plot-span']![theme], ...(theme === 'light' ? ['#ffffff'] : [])]) {
+        expect(contrast(colours[theme], ground), name).toBeGreaterThan(3);
+      }
+    }
     if (name === '--plot-text') expect(contrast(colours[theme], paper), name).toBeGreaterThan(4.5);
     if (name === '--plot-axis') expect(contrast(colours[theme], paper), name).toBeGreaterThan(3);
   }
 });
 
+/**
+ * G. M. Machado, M. M. Oliveira, L. A. F. Fernandes, A physiologically-based model for simulation of color vision deficiency, IEEE
+ * Trans. Vis. Comput. Graph. 15 (2009): matrices on linear sRGB for full protanopia, deuteranopia and tritanopia (from memory).
+ */
+const VISIONS: { readonly [name: string]: readonly (readonly [number, number, number])[] } = {
+  common: [
+    [1, 0, 0],
+    [0, 1, 0],
+    [0, 0, 1],
+  ],
+  protanopia: [
+    [0.152286, 1.052583, -0.204868],
+    [0.114503, 0.786281, 0.099216],
+    [-0.003882, -0.048116, 1.051998],
+  ],
+  deuteranopia: [
+    [0.367322, 0.860646, -0.227968],
+    [0.280085, 0.672501, 0.047413],
+    [-0.01182, 0.04294, 0.968881],
+  ],
+  tritanopia: [
+    [1.255528, -0.076749, -0.178779],
+    [-0.078411, 0.930809, 0.147602],
+    [0.004733, 0.691367, 0.3039],
+  ],
+};
+
+// Distances of CIE 1976 L*a*b* (ISO/CIE 11664-4): about 2.3 is just noticed side by side (from memory); thin lines need several times that
+describe.each(['light', 'dark'] as const)('series of plots on a %s page', (theme) => {
+  const series = Array.from({ length: 8 }, (_, k) => PLOT_PALETTE[`--plot-series-${k + 1}`]![theme]);
+
+  test.each(Object.entries(VISIONS))('are told apart: %s', (_, matrix) => {
+    const seen = series.map((colour) => lightnessAndHue(colour, matrix));
+    for (const [i, one] of seen.entries()) {
+      for (const [j, other] of seen.entries()) {
+        if (i >= j) continue;
+        const distance = Math.hypot(...one.map((value, k) => value - other[k]!));
+        expect(distance, `${i + 1} and ${j + 1}`).toBeGreaterThan(j < 4 ? 25 : 12);
+      }
+    }
+  });
+
+  test('differ from their neighbours in grey', () => {
+    const lightness = series.map((colour) => lightnessAndHue(colour, VISIONS.common!)[0]!);
+    for (let k = 1; k < 8; k++)
+      expect(Math.abs(lightness[k]! - lightness[k - 1]!), `${k} and ${k + 1}`).toBeGreaterThan(12);
+  });
+});
+
+/** L*, a*, b* of a colour as it is seen; sRGB by IEC 61966-2-1, white D65. */
+function lightnessAndHue(colour: string, matrix: readonly (readonly number[])[]): number[] {
+  const own = linearChannels(colour);
+  const [red, green, blue] = matrix.map((row) => {
+    return Math.max(
+      0,
+      Math.min(
+        1,
+        row.reduce((sum, weight, k) => sum + weight * own[k]!, 0),
+      ),
+    );
+  }) as [number, number, number];
+  const cube = (t: number): number => (t > (6 / 29) ** 3 ? Math.cbrt(t) : t / (3 * (6 / 29) ** 2) + 4 / 29);
+  const x = cube((0.4124 * red + 0.3576 * green + 0.1805 * blue) / 0.9505);
+  const y = cube(0.2126 * red + 0.7152 * green + 0.0722 * blue);
+  const z = cube((0.0193 * red + 0.1192 * green + 0.9505 * blue) / 1.089);
+  return [116 * y - 16, 500 * (x - y), 200 * (y - z)];
+}
+
+function linearChannels(colour: string): number[] {
+  return [1, 3, 5].map((at) => {
+    const channel = Number.parseInt(colour.slice(at, at + 2), 16) / 255;
+    return channel <= 0.04045 ? channel / 12.92 : ((channel + 0.055) / 1.055) ** 2.4;
+  });
+}
+
 /** Contrast ratio and relative luminance as the guidelines define them. */
 function contrast(one: string, other: string): number {
   const luminance = (colour: string): number => {
-    const [red, green, blue] = [1, 3, 5].map((at) => {
-      const channel = Number.parseInt(colour.slice(at, at + 2), 16) / 255;
-      return channel <= 0.04045 ? channel / 12.92 : ((channel + 0.055) / 1.055) ** 2.4;
-    });
+    const [red, green, blue] = linearChannels(colour);
     return 0.2126 * red! + 0.7152 * green! + 0.0722 * blue!;
   };
   const [light, dark] = [luminance(one), luminance(other)].sort((a, b) => b - a);
