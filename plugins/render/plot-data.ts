@@ -10,6 +10,8 @@ const POINTS = 1200;
 /** Digits that are drawn of a value; more where a curve's range is small beside its values. */
 const DIGITS_ACROSS = 8;
 const DIGITS_UP = 6;
+/** Digits of the range: a pixel is a thousandth of it. */
+const DIGITS_OF_RANGE = 5;
 
 export interface DrawnPoint {
   /** In the units shown. */
@@ -48,8 +50,8 @@ export function thinnedPoints(waveform: Waveform): readonly Point[] {
 
 export function drawnPoints(curve: Curve, plot: SolvedPlot): DrawnPoint[] {
   const points = curve.against ? pairedPoints(curve.waveform, curve.against) : thinnedPoints(curve.waveform);
-  const across = digitsFor(extentOf(points.map(({ x }) => x)), DIGITS_ACROSS);
-  const up = digitsFor(extentOf(points.map(({ y }) => y)), DIGITS_UP);
+  const across = digitsFor(extentOf(points.map(({ x }) => x)), DIGITS_ACROSS, DIGITS_OF_RANGE);
+  const up = digitsFor(extentOf(points.map(({ y }) => y)), DIGITS_UP, DIGITS_OF_RANGE);
   return points.map(({ x, y }) => ({
     x: Number((x * plot.horizontal.scale).toPrecision(across)),
     y: Number.isFinite(y) ? Number((y * curve.scale).toPrecision(up)) : null,
@@ -94,10 +96,13 @@ export function extentOf(values: Iterable<number | null>): Extent | undefined {
   return least <= greatest ? { least, greatest } : undefined;
 }
 
-/** Significant digits that show a range with `fewest` digits, also where its values differ only in their last places. */
-export function digitsFor(extent: Extent | undefined, fewest: number): number {
+/**
+ * Significant digits to show values of a range with: `fewest`, and more where the values differ only in their last places, so
+ * that their differences have `ofRange` digits.
+ */
+export function digitsFor(extent: Extent | undefined, fewest: number, ofRange: number): number {
   if (extent === undefined || extent.greatest === extent.least) return fewest;
   const size = Math.max(Math.abs(extent.least), Math.abs(extent.greatest));
   const more = Math.ceil(Math.log10(size / (extent.greatest - extent.least)));
-  return Math.min(15, fewest + Math.max(0, more));
+  return Math.min(15, Math.max(fewest, ofRange + more));
 }

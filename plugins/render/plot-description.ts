@@ -6,7 +6,10 @@ import { shortNumber } from './plot-table.ts';
 
 /** More curves than this are told by their lines, not one by one. */
 const TOLD_APART = 6;
-const DIGITS = 4;
+/** Significant digits of the values, and of the differences between them. */
+const DIGITS = [4, 2] as const;
+/** Beside the greatest value this is nothing: far below the accuracy of solving, unless more was asked for than a sentence needs. */
+const NOTHING = 1e-6;
 
 export function describePlot(plot: SolvedPlot): string {
   const { curves, horizontal, spans } = plot;
@@ -39,7 +42,10 @@ function rangeOf(group: readonly Curve[], plot: SolvedPlot): string {
   const extent = extentOf(group.flatMap((curve) => drawnPoints(curve, plot).map(({ y }) => y)));
   if (extent === undefined) return 'without a value';
   const unit = group[0]!.unit === '' ? '' : ` ${group[0]!.unit}`;
-  const digits = digitsFor(extent, DIGITS);
-  const [least, greatest] = [extent.least, extent.greatest].map((value) => `${shortNumber(value, digits)}${unit}`);
+  const digits = digitsFor(extent, ...DIGITS);
+  const size = Math.max(Math.abs(extent.least), Math.abs(extent.greatest));
+  const [least, greatest] = [extent.least, extent.greatest].map((value) => {
+    return `${shortNumber(Math.abs(value) < NOTHING * size ? 0 : value, digits)}${unit}`;
+  });
   return least === greatest ? `at ${least}` : `from ${least} to ${greatest}`;
 }

@@ -2,12 +2,13 @@
 import { valueAt } from '../../solver/waveform/value-at.ts';
 import type { Waveform } from '../../solver/waveform/waveform.ts';
 import type { SolvedPlot } from '../results.ts';
-import { conditionsText, curveName, digitsFor, extentOf, thinnedPoints } from './plot-data.ts';
+import { conditionsText, curveName, digitsFor, type Extent, extentOf, thinnedPoints } from './plot-data.ts';
 
 /** Rows of the table beside a plot. */
 const TABLE_ROWS = 13;
-const TABLE_DIGITS = 4;
-const CSV_DIGITS = 7;
+/** Significant digits of the values, and of the differences between them. */
+const TABLE_DIGITS = [4, 3] as const;
+const CSV_DIGITS = [7, 5] as const;
 
 /** What is this small beside the greatest value of its curve is rounding: it is shown as zero. */
 const ROUNDING = 1e-13;
@@ -21,8 +22,8 @@ interface Column {
   readonly head: string;
   /** In the unit of the head. */
   readonly valueAt: (x: number, side: 'left' | 'right') => number;
-  /** Significant digits, of the short table; what the CSV has more is the same for all. */
-  readonly digits: number;
+  /** In SI. */
+  readonly extent: Extent | undefined;
 }
 
 /** A dozen values of every curve, evenly spaced along the axis. */
@@ -32,7 +33,7 @@ export function valueTable(plot: SolvedPlot): ValueTable {
   const steps = greatest > least ? TABLE_ROWS - 1 : 0;
   const rows = Array.from({ length: steps + 1 }, (_, k) => {
     const x = steps === 0 ? least : least + ((greatest - least) * k) / steps;
-    return columns.map((column) => shortNumber(column.valueAt(x, 'right'), column.digits));
+    return columns.map((column) => shortNumber(column.valueAt(x, 'right'), digitsFor(column.extent, ...TABLE_DIGITS)));
   });
   return { columns: columns.map(({ head }) => head), rows };
 }
@@ -51,7 +52,7 @@ export function plotCsv(plot: SolvedPlot): string {
     }
   }
   const row = (x: number, side: 'left' | 'right'): string =>
-    columns.map((column) => csvNumber(column.valueAt(x, side), column.digits + CSV_DIGITS - TABLE_DIGITS)).join(',');
+    columns.map((column) => csvNumber(column.valueAt(x, side), digitsFor(column.extent, ...CSV_DIGITS))).join(',');
   const lines = [columns.map(({ head }) => csvCell(head)).join(',')];
   for (const x of [...places].sort((a, b) => a - b)) {
     if (jumps.has(x)) lines.push(row(x, 'left'));
@@ -70,7 +71,7 @@ function columnsOf(plot: SolvedPlot): Column[] {
   columns.push({
     head: paired ? 'parameter' : withUnit(horizontal.label, horizontal.unit),
     valueAt: (x) => x * axisScale,
-    digits: digitsFor(axis, TABLE_DIGITS),
+    extent: axis,
   });
   const runs = new Map<string, Waveform>();
   for (const curve of curves) {
@@ -91,7 +92,7 @@ function columnOf(head: string, waveform: Waveform, scale: number): Column {
   const size = extent ? Math.max(Math.abs(extent.least), Math.abs(extent.greatest)) : 0;
   return {
     head,
-    digits: digitsFor(extent, TABLE_DIGITS),
+    extent,
     valueAt: (x, side) => {
       const value = valueAt(waveform, x, side);
       return Math.abs(value) < ROUNDING * size ? 0 : value * scale;
@@ -112,7 +113,7 @@ function withUnit(name: string, unit: string): string {
 }
 
 function csvNumber(value: number, digits: number): string {
-  return Number.isFinite(value) ? String(Number(value.toPrecision(Math.min(15, digits)))) : '';
+  return Number.isFinite(value) ? String(Number(value.toPrecision(digits))) : '';
 }
 
 /** RFC 4180; a head that a spreadsheet would take for a formula gets a blank before it. */
@@ -122,7 +123,7 @@ function csvCell(text: string): string {
 }
 
 /** Four digits unless more are asked for, as a reader writes them; a dash where there is no value. */
-export function shortNumber(value: number, digits = TABLE_DIGITS): string {
+export function shortNumber(value: number, digits: number = TABLE_DIGITS[0]): string {
   if (!Number.isFinite(value)) return '–';
   const rounded = Number(value.toPrecision(digits));
   const text = Math.abs(rounded) >= 1e6 ? rounded.toExponential() : String(rounded);

@@ -222,6 +222,27 @@ describe('a drawing', () => {
     expect(csv).not.toContain('NaN');
   });
 
+  test('is described with digits that matter', async () => {
+    const curves = [
+      curve('a', [
+        [0, -1e-11],
+        [1, 7.83333],
+      ]),
+      curve('b', [
+        [0, 4.90244],
+        [1, 5],
+      ]),
+      curve('c', [
+        [0, 5],
+        [1, 5.00002],
+      ]),
+    ];
+    const { description } = await renderPlot(plotOf(curves), { id: 'p' });
+    expect(description).toBe(
+      '3 curves over time: a from 0 V to 7.833 V; b from 4.902 V to 5 V; c from 5 V to 5.00002 V.',
+    );
+  });
+
   test('many curves are described by their families', async () => {
     const family = Array.from({ length: 9 }, (_, k) =>
       curve(
